@@ -1,0 +1,1 @@
+"""Measures: what is counted, with the intervals that go with it."""

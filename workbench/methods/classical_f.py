@@ -1,0 +1,19 @@
+"""The classical one-way F."""
+
+from workbench.tails import anova_tail
+from workbench.methods.method import METHODS, Method
+
+
+@METHODS.add
+class ClassicalF(Method):
+    """Classical one-way analysis of variance F."""
+
+    name = "classical_f"
+    label = "classical F"
+    hypothesis = "means"
+    assumes = "normal groups of equal spread"
+    undefined_when = "no value differs from another within its group"
+    cite = "Fisher, R. A. (1925). Statistical Methods for Research Workers. Oliver & Boyd"
+
+    def kernel(self, batch, rng):
+        return anova_tail(batch)

@@ -1,0 +1,28 @@
+"""The classical F on logarithms."""
+
+import numpy as np
+
+from workbench.tails import anova_tail
+from workbench.groups import Batch
+from workbench.methods.method import METHODS, Method
+
+
+@METHODS.add
+class LogF(Method):
+    """Classical F of the natural logarithms."""
+
+    name = "log_f"
+    label = "F on logarithms"
+    hypothesis = "geometric means"
+    assumes = "logarithms normal, of equal spread"
+    undefined_when = "a value is 0 or less, or no value differs from another within its group"
+    cite = "Bartlett, M. S. (1947). The use of transformations. Biometrics 3(1), 39-52"
+
+    def kernel(self, batch, rng):
+        positive = ~(batch.columns <= 0).any(axis=0)
+        return np.where(positive, anova_tail(batch.shared(logarithms)), np.nan)
+
+
+def logarithms(batch):
+    """The batch of natural logarithms, NaN where there is none."""
+    return Batch.of_columns(np.log(batch.columns), batch.designed)

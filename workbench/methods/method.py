@@ -1,0 +1,18 @@
+"""What a method is."""
+
+from abc import ABC
+from typing import ClassVar
+
+from workbench.registry import Shelf
+from workbench.significance import SignificanceTest
+
+METHODS = Shelf("method")
+
+
+class Method(SignificanceTest, ABC):
+    """A test of equality of k groups."""
+
+    label: ClassVar[str]
+    """What sentences call the method: "use the …"."""
+    hypothesis: ClassVar[str]
+    """What the method tests, in the words of `compare`: means, distributions …"""

@@ -1,0 +1,32 @@
+"""Welch's F, for groups of unequal spread."""
+
+from workbench.tails import f_distribution_tail
+from workbench.methods.method import METHODS, Method
+
+
+@METHODS.add
+class WelchF(Method):
+    """Welch's heteroscedastic F."""
+
+    name = "welch_f"
+    label = "Welch F"
+    hypothesis = "means"
+    assumes = "normal groups; spreads may differ"
+    undefined_when = "all values of some group are equal, or a group has fewer than two"
+    cite = "Welch, B. L. (1951). On the comparison of several mean values. Biometrika 38(3/4), 330-336"
+
+    def kernel(self, batch, rng):
+        k = batch.groups
+        weights, shares, slack = batch.shift_free(welch_weights)
+        centre = (shares * batch.means).sum(axis=1, keepdims=True)
+        between = (weights * (batch.means - centre) ** 2).sum(axis=1) / (k - 1)
+        f = between / (1 + 2 * (k - 2) / (k**2 - 1) * slack)
+        return f_distribution_tail(k - 1, (k**2 - 1) / (3 * slack), f)
+
+
+def welch_weights(batch):
+    """((R, k) weights n / variance, (R, k) their shares, (R,) sum of (1 - share)^2 / (n - 1))."""
+    weights = batch.sizes / batch.variances
+    shares = weights / weights.sum(axis=1, keepdims=True)
+    slack = ((1 - shares) ** 2 / (batch.sizes - 1)).sum(axis=1)
+    return weights, shares, slack

@@ -1,0 +1,1 @@
+"""Routes: procedures of several stages, judged as one method."""
