@@ -1,0 +1,1 @@
+"""Theory: rates without replications, one file a kind of argument."""
