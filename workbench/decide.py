@@ -1,0 +1,208 @@
+"""Decide: which methods are eligible, which is chosen, and the reasons as sentences."""
+
+from dataclasses import dataclass, field
+from enum import Enum
+
+import numpy as np
+import pandas as pd
+
+from workbench import wording
+from workbench.criteria import Verdict
+from workbench.grid import answering
+from workbench.table import judging, portion
+from workbench.verdict import advice, together
+
+
+class Status(Enum):
+    """How a decision ended."""
+
+    CHOSEN = "chosen"
+    TIE = "tie"
+    NONE_ELIGIBLE = "none eligible"
+    UNDECIDED = "undecided"
+
+
+@dataclass(frozen=True)
+class Standing:
+    """One method against the criteria."""
+
+    name: str
+    label: str
+    hypothesis: str
+    answers: bool
+    """Whether it answers the question asked."""
+    admitted: bool
+    size: Verdict | None
+    """None where no condition has the null hypothesis true."""
+    power: Verdict | None
+    errors: pd.DataFrame = field(repr=False)
+    """Its rows that the size criterion judges."""
+    detections: pd.DataFrame = field(repr=False)
+    """Its rows at the difference that must not be missed, or all detections where the file names none."""
+
+    @property
+    def counted_in(self):
+        """Whether it may be chosen if it keeps its error rate."""
+        return self.answers or self.admitted
+
+    @property
+    def eligible(self):
+        """Whether it is shown to keep its error rate everywhere."""
+        return self.counted_in and self.size is Verdict.MEETS
+
+    @property
+    def possible(self):
+        """Whether it is not shown to break its error rate anywhere."""
+        return self.counted_in and self.size is not None and self.size is not Verdict.FAILS
+
+    @property
+    def least(self):
+        """The row of its least detection; None without alternatives."""
+        return None if self.detections.empty else self.detections.loc[self.detections["rate"].idxmin()]
+
+
+@dataclass(frozen=True)
+class Decision:
+    """What was decided, and why, as data and as sentences."""
+
+    status: Status
+    chosen: list
+    eligible: list
+    excluded: dict
+    plan: str
+    digest: str
+    sentences: list
+    standings: list = field(repr=False)
+
+    def as_data(self):
+        """The decision as plain data."""
+        keys = ("chosen", "eligible", "excluded", "plan", "digest", "sentences")
+        return {"status": self.status.value} | {key: getattr(self, key) for key in keys}
+
+
+def decided(study, conditions, tables):
+    """The Decision of a study from its tables."""
+    standings = [standing(study, conditions, judge, tables.rates) for judge in study.judges]
+    excluded = {one.name: wording.exclusion(study, one) for one in standings if not one.possible}
+    status, chosen = choice(study, standings, tables)
+    sentences = wording.decision(
+        study, status.value, chosen, standings, advised(study, conditions, standings, tables)
+    )
+    return Decision(
+        status,
+        [one.name for one in chosen],
+        [one.name for one in standings if one.eligible],
+        excluded,
+        study.key,
+        tables.digest,
+        sentences,
+        standings,
+    )
+
+
+def standing(study, conditions, judge, rates):
+    """The Standing of one method."""
+    mine = rates[(rates["method"] == judge.name) & (rates["alpha"] == study.levels[0])]
+    errors = mine[mine["reading"] == "error"]
+    detections = mine[mine["reading"] == "detection"]
+    if study.criteria.power is not None:
+        detections = detections[detections["difference"] == study.criteria.power.at]
+    return Standing(
+        judge.name,
+        judge.label,
+        judge.method.hypothesis,
+        answering(study, conditions)[judge.name],
+        judge.name in study.criteria.admit,
+        None if errors.empty else together(errors["verdict"]),
+        None if study.criteria.power is None or detections.empty else together(detections["verdict"]),
+        errors,
+        detections,
+    )
+
+
+def choice(study, standings, tables):
+    """(Status, the Standings chosen or tied)."""
+    possible = [one for one in standings if one.possible]
+    eligible = [one for one in possible if one.eligible]
+    if not possible:
+        no_null = any(one.counted_in and one.size is None for one in standings)
+        return (Status.UNDECIDED if no_null else Status.NONE_ELIGIBLE), []
+    if not eligible:
+        return Status.UNDECIDED, []
+    if study.criteria.power is None or eligible[0].detections.empty:
+        settled = len(possible) == len(eligible)
+        return settle(eligible) if settled else (Status.UNDECIDED, [])
+    return best(study, eligible, possible, tables)
+
+
+def settle(leaders):
+    """Chosen where one is left, tie where several are."""
+    return (Status.CHOSEN if len(leaders) == 1 else Status.TIE), leaders
+
+
+def best(study, eligible, possible, tables):
+    """The eligible method of the largest worst-case detection, with those that tie with it."""
+    lead = max(eligible, key=lambda one: one.detections["rate"].min())
+    tied = [lead]
+    for rival in possible:
+        if rival is lead:
+            continue
+        low, high = worst_case_difference(lead, rival, tables.differences)
+        if -study.criteria.tie <= low and high <= study.criteria.tie:
+            if not rival.eligible:
+                return Status.UNDECIDED, []
+            tied.append(rival)
+        elif not low > 0:
+            return Status.UNDECIDED, []
+    return settle([one for one in eligible if one in tied])
+
+
+def worst_case_difference(one, other, differences):
+    """(low, high) limits of the least detection of one method less that of another.
+
+    Where `other` is least, `one` is at least as high as its own least; so the difference of the two minima is at
+    most the paired upper limit in a condition that may be the other's least, and likewise at least the lower
+    limit in one that may be the method's own least. All limits hold at once, so nothing further is paid.
+    """
+    lower, upper = paired_limits(one, other, differences)
+    return min(lower[may_be_least(one)]), max(upper[may_be_least(other)])
+
+
+def may_be_least(one):
+    """(conditions,) bool: by its limits, the method's least detection may be there."""
+    return (one.detections["lower"] <= one.detections["upper"].min()).to_numpy()
+
+
+def paired_limits(one, other, differences):
+    """((conditions,) lower, (conditions,) upper) limits of the paired difference of two methods' detections."""
+    level = one.detections["alpha"].iloc[0]
+    here = differences[
+        differences["condition"].isin(one.detections["condition"]) & (differences["alpha"] == level)
+    ]
+    ahead = here[(here["method"] == one.name) & (here["rival"] == other.name)]
+    if len(ahead):
+        return ahead["lower"].to_numpy(), ahead["upper"].to_numpy()
+    behind = here[(here["method"] == other.name) & (here["rival"] == one.name)]
+    return -behind["upper"].to_numpy(), -behind["lower"].to_numpy()
+
+
+def advised(study, conditions, standings, tables):
+    """[(row, limit, Advice)] for the open size rows of methods that may be chosen, the hardest to settle first."""
+    criteria = judging(study, conditions)
+    rates = tables.rates
+    error = portion(1 - study.criteria.confidence, "verdicts", (rates["verdict"] != "").sum())
+    found = []
+    for one in standings:
+        if not one.possible:
+            continue
+        for _, row in one.errors[one.errors["verdict"] == Verdict.UNDECIDED.value].iterrows():
+            limit = nearest_limit(criteria[row["condition"]].band(row["alpha"]), row)
+            ends = row["lower"], row["upper"]
+            found.append((row, limit, advice(row["rejections"], row["replications"], limit, *ends, error)))
+    return sorted(found, key=lambda item: np.inf if item[2].more is None else item[2].more, reverse=True)
+
+
+def nearest_limit(band, row):
+    """The limit of a band that lies within a row's interval, nearest to its rate."""
+    within = [limit for limit in band if row["lower"] <= limit <= row["upper"]]
+    return min(within, key=lambda limit: abs(limit - row["rate"]))
