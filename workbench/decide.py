@@ -162,10 +162,19 @@ def worst_case_difference(one, other, differences):
 
     Where `other` is least, `one` is at least as high as its own least; so the difference of the two minima is at
     most the paired upper limit in a condition that may be the other's least, and likewise at least the lower
-    limit in one that may be the method's own least. All limits hold at once, so nothing further is paid.
+    limit in one that may be the method's own least. Nor can it leave what the limits of the two minima allow. All
+    limits hold at once, so nothing further is paid.
     """
     lower, upper = paired_limits(one, other, differences)
-    return min(lower[may_be_least(one)]), max(upper[may_be_least(other)])
+    (own_low, own_high), (other_low, other_high) = least_limits(one), least_limits(other)
+    low = max(min(lower[may_be_least(one)]), own_low - other_high)
+    high = min(max(upper[may_be_least(other)]), own_high - other_low)
+    return low, high
+
+
+def least_limits(one):
+    """(low, high) limits of a method's least detection."""
+    return one.detections["lower"].min(), one.detections["upper"].min()
 
 
 def may_be_least(one):

@@ -20,3 +20,18 @@ def over_shares(function, low=0.0, high=1.0):
     """Integral of function(share) over shares from low to high; the function may be singular at the ends."""
     nodes, weights = unit_interval()
     return float((high - low) * (weights * function(low + (high - low) * nodes)).sum())
+
+
+def inverted(cumulative, shares, low, high, steps=80):
+    """The values at which a cumulative function takes the given shares, by bisection between low and high.
+
+    Shares of 0 and 1 give -inf and inf, as befits a population without ends.
+    """
+    shares = np.asarray(shares, dtype=float)
+    below, above = np.full(shares.shape, float(low)), np.full(shares.shape, float(high))
+    for _ in range(steps):
+        middle = (below + above) / 2
+        under = cumulative(middle) < shares
+        below, above = np.where(under, middle, below), np.where(under, above, middle)
+    found = (below + above) / 2
+    return np.where(shares <= 0, -np.inf, np.where(shares >= 1, np.inf, found))

@@ -10,8 +10,8 @@ def rank_sums_and_ties(rows, replications, sizes):
     """((R, k) sums of mid-ranks, (R,) sums of t^3 - t over ties) of R datasets; NaN is a missing value.
 
     rows(slice) gives some of the datasets as a new (r, N) array, without negative zeros. Group numbers are
-    written into the lowest bits of the values, which are then sorted in place. A dataset in which two neighbours
-    agree in all other bits, or that holds an infinite or missing value, is ranked anew without that device, so
+    written into the lowest bits of the values, which are then sorted in place. A dataset in which that device
+    makes a tie of values that differ, or that holds an infinite or missing value, is ranked anew without it, so
     that the result is exact for every dataset.
     """
     labels = np.repeat(np.arange(len(sizes)), sizes)
@@ -19,27 +19,63 @@ def rank_sums_and_ties(rows, replications, sizes):
     ties = np.zeros(replications)
     for start in range(0, replications, ROWS):
         some = slice(start, min(start + ROWS, replications))
-        sums[some], doubtful = packed_rank_sums(rows(some), labels, len(sizes))
+        found, tied, doubtful = packed_order(rows(some), labels, len(sizes))
+        if tied is None:
+            sums[some] = sums_by_label(found, len(sizes))
+        else:
+            sums[some], ties[some] = tied_sums(found, tied, len(sizes))
+            doubtful |= falsely_tied(rows(some), tied)
         if doubtful.any():
             where = np.flatnonzero(doubtful)
             sums[start + where], ties[start + where] = exact_rank_sums(rows(some)[where], labels, len(sizes))
     return sums, ties
 
 
-def packed_rank_sums(values, labels, groups):
-    """((R, k) rank sums, (R,) bool: datasets in which they cannot be trusted) of (R, N) values, which are used up."""
+def packed_order(values, labels, groups):
+    """(labels in the order of the values, neighbours tied or None where none are, datasets that hold a NaN).
+
+    Shapes (R, N), (R, N - 1), (R,); the (R, N) values are used up. Values count as tied that agree in all bits
+    above those that a label takes.
+    """
     mask = (1 << (groups - 1).bit_length()) - 1
     bits = values.view(np.int64)
     bits &= ~mask
     bits |= labels
     values.sort(axis=1)
-    doubtful = np.isnan(values[:, -1])
+    missing = np.isnan(values[:, -1])
     # Neighbours across the end of a row are compared too: one look at all is cheaper than one at each row.
     apart = np.bitwise_xor(bits.reshape(-1)[1:], bits.reshape(-1)[:-1]).view(np.uint64)
+    tied = None
     if apart.min(initial=mask + 1) <= mask:
-        doubtful |= (np.bitwise_xor(bits[:, 1:], bits[:, :-1]).view(np.uint64) <= mask).any(axis=1)
+        tied = np.append(apart <= mask, False).reshape(bits.shape)[:, :-1]
     bits &= mask
-    return sums_by_label(bits, groups), doubtful
+    return bits, tied, missing
+
+
+def falsely_tied(values, tied):
+    """(R,) bool: datasets of which some neighbours in order differ although they count as tied."""
+    values.sort(axis=1)
+    return ((values[:, 1:] == values[:, :-1]) != tied).any(axis=1)
+
+
+def tied_sums(found, tied, groups):
+    """((R, k) sums of mid-ranks by label, (R,) sums of t^3 - t) of (R, N) labels in order, neighbours tied or not.
+
+    The work runs along the replications: first and last place of each value's run of ties by accumulation.
+    """
+    replications, total = found.shape
+    whole = np.int32 if total < 30_000 else np.int64  # sums of twice the mid-ranks reach total * (total + 1)
+    places = np.arange(total, dtype=whole)[:, None]
+    joined = np.zeros((total + 1, replications), dtype=bool)
+    joined[1:-1] = tied.T
+    first = np.maximum.accumulate(np.where(joined[:-1], 0, places), axis=0)
+    last = np.minimum.accumulate(np.where(joined[1:], total, places)[::-1], axis=0)[::-1]
+    twice = first + last + 2
+    labels = found.T.astype(np.int16)
+    sums = [np.add.reduce(twice * (labels == group), axis=0, dtype=whole) / 2 for group in range(groups - 1)]
+    sums.append(total * (total + 1) / 2 - sum(sums))
+    lengths = (last - first + 1).astype(float)
+    return np.stack(sums, axis=1), np.square(lengths, out=lengths).sum(axis=0) - total
 
 
 def sums_by_label(found, groups):

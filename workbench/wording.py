@@ -1,6 +1,6 @@
 """Wording: the sentences of a decision, made from its rows."""
 
-from workbench.numbers import decimals, limits, listed, percent
+from workbench.numbers import NO_BREAK, decimals, limits, listed, percent
 
 
 def exclusion(study, standing):
@@ -161,8 +161,9 @@ def power_shortfall(study, chosen):
 
 def rate_with_limits(row):
     """A rate as a percentage of studies with its interval."""
-    digits = decimals(row["mcse"]) + 1
-    return f"{percent(row['rate'], row['mcse'])} of studies ({limits(row['lower'], row['upper'], digits)})"
+    digits = max(0, decimals(row["mcse"]) - 1)
+    ends = limits(100 * row["lower"], 100 * row["upper"], digits)
+    return f"{percent(row['rate'], row['mcse'])} of studies ({ends}{NO_BREAK}%)"
 
 
 def conditions(number):

@@ -100,22 +100,21 @@ def print_study(study, found, cost):
 def conditions_table(study, found):
     """A line for each condition: level names, truth, what holds as recorded, the true quantities of the groups."""
     varied = [factor for factor, levels in study.factors.levels.items() if len(levels) > 1]
-    headings = [
-        ("", "right"),
-        *((factor, "left") for factor in varied),
-        ("truth", "left"),
-        ("equal as recorded", "left"),
-    ]
-    made = terminal.table(
-        [*headings, ("mean", "left"), ("median", "left"), ("sd", "left"), ("skewness", "left")]
-    )
+    headings = [("", "right"), *((factor, "left") for factor in varied), ("truth", "left")]
+    headings += [(f"{heading}…", "left") for heading in ("mean", "median", "sd", "skewness", "equal as recorded")]
+    made = terminal.table(headings)
     for condition in found:
         groups = recorded_quantities(condition)
         names = [condition.levels[factor] for factor in varied]
         told = [row(groups, quantity) for quantity in ("mean", "median", "sd", "skewness")]
-        holds = ", ".join(holds_as_recorded(condition)) or "nothing"
-        terminal.add(made, [condition.number, *names, condition.truth, holds, *told])
+        terminal.add(made, [condition.number, *names, condition.truth, *told, holding_shown(condition)])
     return made
+
+
+def holding_shown(condition):
+    """What is equal as recorded, in few words."""
+    holds = holds_as_recorded(condition)
+    return "everything" if "distributions" in holds else ", ".join(holds) or "nothing"
 
 
 def row(groups, quantity):

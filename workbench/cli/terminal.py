@@ -7,8 +7,11 @@ from rich.console import Console
 from rich.table import Table
 from rich.text import Text
 
-PIPED_WIDTH = 120
+PIPED_WIDTH = 140
 """Columns of output that goes into a file or another program."""
+
+NARROW = 120
+"""Below so many columns a rate, its interval and its place stand under one another."""
 
 
 def console():
@@ -25,10 +28,10 @@ def console():
 
 
 def table(columns):
-    """An empty table: columns are (heading, 'left' or 'right')."""
+    """An empty table: columns are (heading, 'left' or 'right'); a heading that ends in … marks one that may wrap."""
     made = Table(box=box.SIMPLE_HEAD, show_edge=False, pad_edge=False, header_style="bold")
     for heading, side in columns:
-        made.add_column(Text(heading), justify=side, overflow="fold", no_wrap=side == "right")
+        made.add_column(Text(heading.removesuffix("…")), justify=side, no_wrap=not heading.endswith("…"))
     return made
 
 

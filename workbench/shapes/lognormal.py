@@ -42,11 +42,11 @@ class Lognormal(Asymmetric):
         original = centre + scale * np.asarray(value, dtype=float)
         return np.where(original > 0, ndtr(np.log(np.maximum(original, 1e-300)) / self.sigma), 0.0)
 
-    def skewness_upright(self):
+    def true_skewness_upright(self):
         w = np.exp(self.sigma**2)
         return float((w + 2) * np.sqrt(w - 1))
 
-    def excess_kurtosis(self):
+    def true_excess_kurtosis(self):
         w = np.exp(self.sigma**2)
         return float(w**4 + 2 * w**3 + 3 * w**2 - 6)
 

@@ -25,10 +25,10 @@ class Normal(Shape):
     def trimmed_mean(self):
         return 0.0
 
-    def skewness(self):
+    def true_skewness(self):
         return 0.0
 
-    def excess_kurtosis(self):
+    def true_excess_kurtosis(self):
         return 0.0
 
     def exponential_mean(self, rate):

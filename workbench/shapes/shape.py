@@ -45,11 +45,11 @@ class Shape(Part, ABC):
         """The mean of what is left when 20 % are cut from each end."""
         return over_shares(self.quantile, TRIM, 1 - TRIM) / (1 - 2 * TRIM)
 
-    def skewness(self):
+    def true_skewness(self):
         """Third standardised moment; NaN where it does not exist."""
         return over_shares(lambda share: self.quantile(share) ** 3)
 
-    def excess_kurtosis(self):
+    def true_excess_kurtosis(self):
         """Fourth standardised moment less 3; infinite or NaN where it is not finite or does not exist."""
         return over_shares(lambda share: self.quantile(share) ** 4) - 3
 
@@ -66,7 +66,7 @@ class Shape(Part, ABC):
 
     def true_quantities(self):
         """Mean, median, sd, skewness, excess_kurtosis, trimmed_mean, geometric_mean (None: does not exist)."""
-        skewness, kurtosis = self.skewness(), self.excess_kurtosis()
+        skewness, kurtosis = self.true_skewness(), self.true_excess_kurtosis()
         return {
             "mean": 0.0,
             "median": self.median(),
@@ -100,8 +100,8 @@ class Asymmetric(Shape, ABC):
         """Like cumulative, of the form that is not mirrored."""
 
     @abstractmethod
-    def skewness_upright(self):
-        """Like skewness, of the form that is not mirrored."""
+    def true_skewness_upright(self):
+        """Like true_skewness, of the form that is not mirrored."""
 
     @abstractmethod
     def exponential_mean_upright(self, rate):
@@ -121,8 +121,8 @@ class Asymmetric(Shape, ABC):
             return 1 - self.cumulative_upright(-np.asarray(value, dtype=float))
         return self.cumulative_upright(value)
 
-    def skewness(self):
-        return -self.skewness_upright() if self.mirrored else self.skewness_upright()
+    def true_skewness(self):
+        return -self.true_skewness_upright() if self.mirrored else self.true_skewness_upright()
 
     def exponential_mean(self, rate):
         return self.exponential_mean_upright(-rate if self.mirrored else rate)
