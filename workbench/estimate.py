@@ -3,9 +3,8 @@
 import time
 from dataclasses import replace
 
-from workbench.chunk import REPLICATIONS
+from workbench.chunk import REPLICATIONS, judged
 from workbench.ledger import packed
-from workbench.chunk import judged
 
 BYTES_A_TALLY = 430
 """Stored bytes of a tally with one level, measured; each further level adds LEVEL_BYTES."""

@@ -254,18 +254,19 @@ def plain_row(row):
 
 
 def packed_bits(bits):
-    """Bits in the shortest form: a first byte says whether what follows is plain (0) or compressed (1)."""
+    """Bits in the shortest form; a first byte says which: plain (0), compressed (1), or so many zero bytes (2)."""
     if not any(bits):
-        return len(bits).to_bytes(4, "big")  # four bytes are told from the other forms by their length
+        return b"\x02" + len(bits).to_bytes(4, "big")
     short = zlib.compress(bits)
     return b"\x01" + short if len(short) < len(bits) else b"\x00" + bits
 
 
 def plain_bits(blob):
     """The bits that packed_bits was given."""
-    if len(blob) == 4:
-        return bytes(int.from_bytes(blob, "big"))
-    return zlib.decompress(blob[1:]) if blob[0] else blob[1:]
+    form, content = blob[0], blob[1:]
+    if form == 2:
+        return bytes(int.from_bytes(content, "big"))
+    return zlib.decompress(content) if form else content
 
 
 def packed_counts(counts):

@@ -141,15 +141,15 @@ def progress(directory):
 
 
 def read_outcome(directory):
-    """The Outcome of a finished result directory; raises Unfinished where work is missing."""
+    """The Outcome of a finished result directory; raises UnfinishedError where work is missing."""
     study, state = progress(directory)
     if not state.finished:
-        raise Unfinished(study, state)
+        raise UnfinishedError(study, state)
     with Ledger.reading(Path(directory) / LEDGER) as ledger:
         return outcome_of(study, conditions(study), directory, ledger)
 
 
-class Unfinished(WorkbenchError):
+class UnfinishedError(WorkbenchError):
     """A result that lacks some of its work."""
 
     status = 3

@@ -242,7 +242,7 @@ def portion(spent, purpose, statements):
 
 
 def judging(study, conditions):
-    """{condition number: the criterion that judges its rows at the first level}; conditions without one are not in it."""
+    """{condition number: the criterion that judges its rows at the first level}, where there is one."""
     return {
         condition.number: criterion
         for condition in conditions
@@ -284,7 +284,8 @@ def digest(study, conditions, rates, differences):
         for row in rates.itertuples()
     ]
     lines += [
-        f"{keys[row.condition]} {methods[row.method]} {methods[row.rival]} {row.alpha!r} {row.only_method} {row.only_rival}"
+        f"{keys[row.condition]} {methods[row.method]} {methods[row.rival]} {row.alpha!r} "
+        f"{row.only_method} {row.only_rival}"
         for row in differences.itertuples()
     ]
     return hashlib.sha256("\n".join(sorted(lines)).encode()).hexdigest()

@@ -109,8 +109,8 @@ def settling(advice, done):
     """What would settle an open row."""
     if advice.more is None:
         return (
-            f"The rate lies within {advice.within:.4f} of the limit; more replications will hardly settle it. Change the "
-            "sizes or the candidates instead."
+            f"The rate lies within {advice.within:.4f} of the limit; more replications will hardly settle it. "
+            "Change the sizes or the candidates instead."
         )
     total = -(-(done + advice.more) // 1000) * 1000
     return (

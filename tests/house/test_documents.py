@@ -62,7 +62,9 @@ def test_the_readme_names_every_part(shelf):
 
 def test_the_guide_names_every_shelf_and_test_folder():
     folders = [path.name for path in (ROOT / "workbench").iterdir() if (path / "__init__.py").exists()]
-    folders += [path.name for path in (ROOT / "tests").iterdir() if path.is_dir() and not path.name.startswith("_")]
+    folders += [
+        path.name for path in (ROOT / "tests").iterdir() if path.is_dir() and not path.name.startswith("_")
+    ]
     assert not [name for name in folders if f"`{name}/`" not in GUIDE]
 
 

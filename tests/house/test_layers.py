@@ -85,8 +85,10 @@ def test_no_import_is_deferred():
 
 def test_random_numbers_come_from_one_file():
     wrong = []
-    for path, tree in sources():
+    for path, _ in sources():
         text = path.read_text(encoding="utf-8")
-        if path.name != "streams.py" and any(word in text for word in ("numpy.random", "np.random", "default_rng")):
+        if path.name != "streams.py" and any(
+            word in text for word in ("numpy.random", "np.random", "default_rng")
+        ):
             wrong.append(path.name)
     assert not wrong

@@ -61,7 +61,11 @@ def test_functions_are_short():
 
 def test_every_file_says_in_one_line_what_it_is():
     wrong = [path for path, tree in TREES.items() if not (ast.get_docstring(tree) or "").strip()]
-    wrong += [path for path, tree in TREES.items() if len((ast.get_docstring(tree) or "").split("\n\n")[0].split("\n")) > 2]
+    wrong += [
+        path
+        for path, tree in TREES.items()
+        if len((ast.get_docstring(tree) or "").split("\n\n")[0].split("\n")) > 2
+    ]
     assert not wrong
 
 
@@ -71,7 +75,11 @@ def abstract_names():
     for tree in TREES.values():
         for node in ast.walk(tree):
             if isinstance(node, ast.ClassDef):
-                found |= {item.name for item in node.body if isinstance(item, ast.FunctionDef) and ast.get_docstring(item)}
+                found |= {
+                    item.name
+                    for item in node.body
+                    if isinstance(item, ast.FunctionDef) and ast.get_docstring(item)
+                }
     return found
 
 
@@ -96,7 +104,9 @@ def is_inner(tree, node):
 
 
 def test_no_class_could_be_taken_for_a_test():
-    named = [node.name for tree in TREES.values() for node in ast.walk(tree) if isinstance(node, ast.ClassDef)]
+    named = [
+        node.name for tree in TREES.values() for node in ast.walk(tree) if isinstance(node, ast.ClassDef)
+    ]
     assert not [name for name in named if name.startswith("Test")]
 
 
@@ -114,18 +124,25 @@ def test_every_file_on_a_shelf_puts_one_part_there_under_its_own_name(folder):
 
 
 def test_importing_the_package_loads_nothing_heavy():
-    code = "import sys, workbench; print([name for name in ('numpy', 'scipy', 'pandas') if name in sys.modules])"
+    code = (
+        "import sys, workbench; print([name for name in ('numpy', 'scipy', 'pandas') if name in sys.modules])"
+    )
     found = subprocess.run(["python", "-c", code], capture_output=True, text=True, check=True).stdout
     assert found.strip() == "[]"
 
 
 def test_no_file_speaks_of_machines_or_other_programs():
     words = r"/work/|/tmp/|/home/|/root/|localhost:\d|Pr\(>|\bSig\.|signif\. codes|\*\*\*|TODO|FIXME|XXX"
-    tracked = subprocess.run(["git", "ls-files"], cwd=ROOT, capture_output=True, text=True, check=True).stdout.split("\n")
+    tracked = subprocess.run(
+        ["git", "ls-files"], cwd=ROOT, capture_output=True, text=True, check=True
+    ).stdout.split("\n")
     wrong = []
     for name in filter(None, tracked):
         path = ROOT / name
-        if path.suffix in (".py", ".md", ".toml", ".csv", ".json", ".html") and path.name != Path(__file__).name:
+        if (
+            path.suffix in (".py", ".md", ".toml", ".csv", ".json", ".html")
+            and path.name != Path(__file__).name
+        ):
             text = path.read_text(encoding="utf-8")
             wrong += [f"{name}: {match.group()}" for match in re.finditer(words, text)]
     assert not wrong

@@ -12,10 +12,10 @@ import numpy as np
 import pytest
 
 from workbench import cli, run
-from workbench.records import difference_key
 from workbench.errors import WorkbenchError, WorkError
 from workbench.ledger import Ledger
 from workbench.plan import plan_of
+from workbench.records import difference_key
 from workbench.study import parse
 
 TEXT = """\

@@ -3,8 +3,8 @@
 import numpy as np
 
 from workbench.checks.check import CHECKS, Check
-from workbench.tails import anova_tail
 from workbench.groups import Batch
+from workbench.tails import anova_tail
 
 
 @CHECKS.add

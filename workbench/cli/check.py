@@ -67,8 +67,8 @@ def print_study(study, found, cost):
     console.print(Text(study.title, style="bold"))
     console.print(
         Text(
-            f"Are {question.compare} of {question.outcome or 'the outcome'}{unit} equal in {len(study.group_names)} groups "
-            f"({', '.join(study.group_names)})? Scale {question.scale}, centre {question.centre:g}, "
+            f"Are {question.compare} of {question.outcome or 'the outcome'}{unit} equal in "
+            f"{len(study.group_names)} groups ({', '.join(study.group_names)})? Scale {question.scale}, centre {question.centre:g}, "
             f"level {', '.join(f'{level:g}' for level in study.levels)}.\n"
         )
     )
@@ -101,7 +101,9 @@ def conditions_table(study, found):
     """A line for each condition: level names, truth, what holds as recorded, the true quantities of the groups."""
     varied = [factor for factor, levels in study.factors.levels.items() if len(levels) > 1]
     headings = [("", "right"), *((factor, "left") for factor in varied), ("truth", "left")]
-    headings += [(f"{heading}…", "left") for heading in ("mean", "median", "sd", "skewness", "equal as recorded")]
+    headings += [
+        (f"{heading}…", "left") for heading in ("mean", "median", "sd", "skewness", "equal as recorded")
+    ]
     made = terminal.table(headings)
     for condition in found:
         groups = recorded_quantities(condition)

@@ -5,7 +5,7 @@ import click
 from workbench.cli import options
 from workbench.cli.summary import print_outcome
 from workbench.decide import Status
-from workbench.run import Unfinished, read_outcome
+from workbench.run import UnfinishedError, read_outcome
 
 OPEN = 3
 """Exit status where the question stays open."""
@@ -27,7 +27,7 @@ def command(directory, as_json):
     """
     try:
         outcome = read_outcome(directory)
-    except Unfinished as unfinished:
+    except UnfinishedError as unfinished:
         if not as_json:
             raise
         options.print_json(nothing_yet(unfinished))

@@ -47,7 +47,8 @@ def command(file, out, workers, replications, seed, as_json, quiet):
 def disagreement(agreement):
     """The sentence that names the first rows in which simulation and theory disagree."""
     rows = [
-        f"condition {row['condition']} {row['method']} at {row['alpha']:g}: {row['rate']:.6f}, theory {row['exact']:.6f}"
+        f"condition {row['condition']} {row['method']} at {row['alpha']:g}: {row['rate']:.6f}, "
+        f"theory {row['exact']:.6f}"
         for row in agreement.disagreeing[:5]
     ]
     return "Simulation and theory disagree, so this table must not be used: " + "; ".join(rows)

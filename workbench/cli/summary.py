@@ -6,7 +6,6 @@ from workbench import wording
 from workbench.cli import terminal
 from workbench.numbers import decimals, limits, proportion
 
-
 CAUTION = (
     "Simulated conditions, not your data: for clinical, safety or release decisions follow local codes and ask a "
     "qualified person."
@@ -49,7 +48,9 @@ def scope(outcome):
 
 def methods_table(study, standings, narrow):
     """One line a method: farthest error, where, verdict, least detection, where."""
-    undefined = {one.name: int(one.errors["undefined"].sum() + one.detections["undefined"].sum()) for one in standings}
+    undefined = {
+        one.name: int(one.errors["undefined"].sum() + one.detections["undefined"].sum()) for one in standings
+    }
     headings = [("method", "left"), *rate_columns("farthest error", narrow), ("size", "left")]
     headings += rate_columns("least detection", narrow)
     if any(undefined.values()):
@@ -66,7 +67,9 @@ def methods_table(study, standings, narrow):
 
 def rate_columns(heading, narrow):
     """The columns that a rate takes: itself, its interval and its place, or all in one where space is short."""
-    return [(f"{heading}…", "left")] if narrow else [(heading, "right"), ("interval", "left"), ("at…", "left")]
+    return (
+        [(f"{heading}…", "left")] if narrow else [(heading, "right"), ("interval", "left"), ("at…", "left")]
+    )
 
 
 def described(study, row, narrow):
@@ -84,7 +87,13 @@ def described(study, row, narrow):
 
 def branches_table(outcome, narrow):
     """For each end of each route: the largest error within it over the null conditions, and the share there."""
-    headings = [("rule", "left"), ("end…", "left"), ("taken", "right"), ("error within", "right"), ("at…", "left")]
+    headings = [
+        ("rule", "left"),
+        ("end…", "left"),
+        ("taken", "right"),
+        ("error within", "right"),
+        ("at…", "left"),
+    ]
     made = terminal.table(headings[:-1] if narrow else headings)
     branches, study = outcome.tables.branches, outcome.study
     here = branches[(branches["reading"] == "error") & (branches["alpha"] == study.levels[0])]

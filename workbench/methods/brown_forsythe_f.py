@@ -2,8 +2,8 @@
 
 import numpy as np
 
-from workbench.tails import f_distribution_tail
 from workbench.methods.method import METHODS, Method
+from workbench.tails import f_distribution_tail
 
 
 @METHODS.add

@@ -1,7 +1,7 @@
 """The classical one-way F."""
 
-from workbench.tails import anova_tail
 from workbench.methods.method import METHODS, Method
+from workbench.tails import anova_tail
 
 
 @METHODS.add

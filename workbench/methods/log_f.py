@@ -2,9 +2,9 @@
 
 import numpy as np
 
-from workbench.tails import anova_tail
 from workbench.groups import Batch
 from workbench.methods.method import METHODS, Method
+from workbench.tails import anova_tail
 
 
 @METHODS.add

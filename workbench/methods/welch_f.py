@@ -1,7 +1,7 @@
 """Welch's F, for groups of unequal spread."""
 
-from workbench.tails import f_distribution_tail
 from workbench.methods.method import METHODS, Method
+from workbench.tails import f_distribution_tail
 
 
 @METHODS.add

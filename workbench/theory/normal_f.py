@@ -12,13 +12,14 @@ ROUNDING = 1e-13
 def classical_f_rate(sizes, spreads, means, alpha):
     """(rejection rate of the classical F at level alpha, bound on its numerical error) for normal groups.
 
-    sizes, spreads (standard deviations, above 0) and means hold k values, one a group. The F exceeds its critical
-    value where the sum of squares between groups, less a multiple of that within, is positive, and that is a
+    sizes, spreads (standard deviations, above 0) and means hold k values, one a group. F exceeds its critical
+    value where the sum of squares between groups less a multiple of that within is positive, and this is a
     weighted sum of independent chi-squares (Box 1954, Annals of Mathematical Statistics 25, 290-302).
     """
     sizes, spreads, means = (np.asarray(column, dtype=float) for column in (sizes, spreads, means))
     if alike(spreads) and alike(means):
         return float(alpha), 0.0
+    # Equal spreads take the same way: ncfdtr errs by 1e-5 in some versions of SciPy, and tells no error.
     ratio = critical_ratio(len(sizes) - 1, sizes.sum() - len(sizes), alpha)
     terms = zip(between(sizes, spreads, means), within(sizes, spreads, ratio), strict=True)
     rate, error = positive_share(*map(np.concatenate, terms))
@@ -31,9 +32,9 @@ def alike(values):
 
 
 def critical_ratio(above, below, alpha):
-    """The ratio of sums of squares that chance exceeds with probability alpha; above, below: degrees of freedom.
+    """The ratio of sums of squares, above by below so many degrees of freedom, exceeded with chance alpha.
 
-    With B beta distributed, the ratio is B / (1 - B). Both parts come from their own tail: 1 - alpha would round.
+    With B beta distributed the ratio is B / (1 - B). Each part is got from alpha: 1 - alpha would be rounded.
     """
     return betainccinv(above / 2, below / 2, alpha) / betaincinv(below / 2, above / 2, alpha)
 
@@ -41,13 +42,15 @@ def critical_ratio(above, below, alpha):
 def between(sizes, spreads, means):
     """(weights, degrees, noncentralities), (k - 1,) each, of the sum of squares between groups.
 
-    That sum is the squared length of what is left of root(size) * group mean once the part along root(size) is
-    taken out; singular values turn it into independent terms, the last of which is the part taken out.
+    That sum is the squared length of root(size) * group mean less its part along root(size). Along singular
+    vectors its terms are independent; the last of them is the part taken out.
     """
     along = np.sqrt(sizes / sizes.sum())
     left = np.eye(len(sizes)) - np.outer(along, along)
     directions, scales, _ = np.linalg.svd(left * spreads)
-    shifts = np.sqrt(sizes) * (means - (sizes * means).sum() / sizes.sum()) @ directions
+    # Means are taken from the first one, so that a far origin costs no digits.
+    away = means - means[0]
+    shifts = np.sqrt(sizes) * (away - (sizes * away).sum() / sizes.sum()) @ directions
     return scales[:-1] ** 2, np.ones(len(sizes) - 1), (shifts[:-1] / scales[:-1]) ** 2
 
 

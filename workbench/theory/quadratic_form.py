@@ -23,8 +23,8 @@ ROUNDING = float(np.finfo(float).eps)
 def positive_share(weights, degrees, noncentralities):
     """(chance that Q > 0, bound on its numerical error): Q adds up weights times independent chi-squares.
 
-    Chi-square j has degrees[j] degrees of freedom and noncentrality noncentralities[j], the sum of the squared
-    means; all three are (m,) arrays. A chance near 0 is as precise in its own leading digits as one near 1/2.
+    Chi-square j has degrees[j] degrees of freedom and noncentrality noncentralities[j], the sum of its squared
+    means; all three are (m,) arrays. A chance near 0 has as many right digits as one near 1/2.
     """
     form = Form(*(np.asarray(column, dtype=float) for column in (weights, degrees, noncentralities)))
     if form.mean <= 0:
@@ -61,7 +61,7 @@ class Form:
         return Form(factor * self.weights, self.degrees, self.noncentralities)
 
     def cumulants(self, tilt):
-        """(..., m): each term's logarithm of the mean of exp(tilt * term), tilt an array of shape (..., 1)."""
+        """(..., m): logarithms of the mean of exp(tilt * term), a term each; tilt is a (..., 1) array."""
         rest = 1 - 2 * tilt * self.weights
         return self.noncentralities * tilt * self.weights / rest - self.degrees / 2 * np.log(rest)
 
@@ -71,7 +71,7 @@ class Form:
         return Form(self.weights / rest, self.degrees, self.noncentralities / rest)
 
     def characteristic(self, y):
-        """(logarithm of the modulus, angle) of the mean of exp(i y sum), (n,) each (Imhof 1961, equation 3.2)."""
+        """(logarithm of the modulus, angle) of the mean of exp(i y sum) at n values y, (n,) each (Imhof 1961)."""
         slopes = np.multiply.outer(y, 2 * self.weights)
         squares = slopes**2
         modulus = np.log1p(squares) @ (self.degrees / 4) + squares / (1 + squares) @ (
@@ -84,12 +84,13 @@ class Form:
 def upper_tail(form):
     """(chance that the sum is positive, bound on its numerical error) of a form whose mean is not positive.
 
-    Imhof (1961, Biometrika 48, 419-426) integrates the characteristic function over y / (i y). Here the path is
-    moved to where the integrand is largest at its middle, c + i y (Rice 1980, SIAM J. Sci. Stat. Comput. 1,
-    438-448): it then hardly oscillates, and small chances do not arise as differences of large ones.
+    Imhof (1961, Biometrika 48, 419-426) integrates the characteristic function over i y divided by i y. Here
+    the path is moved to c + i y through the saddle point of that integrand (Rice 1980, SIAM J. Sci. Stat.
+    Comput. 1, 438-448): it then hardly oscillates, and no small chance is a difference of large ones.
     """
     if form.largest_weight <= 0:
         return 0.0, 0.0
+    # With a largest weight of exactly 1, 1 - 2 * tilt is free of rounding however near the tilt is to 1/2.
     form = form.times(1 / form.largest_weight)
     tilt = best_tilt(form)
     cumulants = form.cumulants(tilt)
@@ -138,7 +139,8 @@ def halved(path):
     """(integral over t > 0, its last change, integral of moduli): trapezoids, steps halved until they agree.
 
     The integrand is analytic about the line, so that a halving about doubles the number of right digits, and
-    the last change is an error of the sum before.
+    the last change is the error of the sum before. If they never agree, as among ten million values, nothing
+    but the moduli bounds the error.
     """
     step, end = FIRST_STEP, path.reach()
     values = path.integrand(np.arange(0, end + step, step))
@@ -152,4 +154,6 @@ def halved(path):
         change = abs(integral - before)
         if change <= ENOUGH * moduli:
             break
+    else:
+        change = 2 * moduli
     return integral, change, moduli
