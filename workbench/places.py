@@ -41,7 +41,7 @@ class Places:
     """Where the keys and values of a TOML text stand, by paths such as ("vary", "spread", "equal", 2).
 
     `keys` holds offsets and `values` spans of characters; `headers` holds where the line below a table's
-    header begins; `dotted` has the tables made by dotted keys; `closing` is the key of what ends the text.
+    header begins; `dotted` has the tables made by dotted keys; `closing` is the key of the end of the text.
     The text has passed tomllib, or is the part of a text that tomllib had read when it met a repeated key.
     """
 
@@ -72,10 +72,8 @@ class Places:
 
     def _header(self, position):
         doubled = self.text.startswith("[[", position)
-        mentions, position = self._mention(position + 1 + doubled, ())
-        if position >= len(self.text):
-            self.closing = mentions
-        table, offset = mentions[-1]
+        self.closing, position = self._mention(position + 1 + doubled, ())
+        table, offset = self.closing[-1]
         if doubled:
             self._last_items[table] = self._last_items.get(table, -1) + 1
             table = (*table, self._last_items[table])

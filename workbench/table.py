@@ -76,9 +76,10 @@ RATE_COLUMNS = (
     "verdict",
 )
 
+# Here `difference` is that of the two rates, so the level of that name goes by another.
 DIFFERENCE_COLUMNS = [
     "condition",
-    *LEVEL_NAMES,
+    *("difference_level" if name == "difference" else name for name in LEVEL_NAMES),
     "alpha",
     "reading",
     "method",
@@ -161,7 +162,7 @@ class Counted:
                 first, second = self.bits[judge.name, level], self.bits[rival.name, level]
                 row = {"alpha": level, "reading": self.reading, "method": judge.name, "rival": rival.name}
                 row |= {"only_method": ones(first & ~second), "only_rival": ones(second & ~first)}
-                rows.append(self.head() | row)
+                rows.append({"difference_level": self.condition.levels["difference"]} | self.head() | row)
         return rows
 
     def branches(self):

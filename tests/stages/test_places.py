@@ -562,6 +562,7 @@ def test_a_missing_setting_goes_where_its_table_is_written(text, path, changed):
         (("a", 0), "1"),
         (("new", 0), "1"),
         ((3,), "1"),
+        ((3, "x"), "1"),
         ((), "1"),
     ],
 )

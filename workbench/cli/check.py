@@ -68,8 +68,8 @@ def print_study(study, found, cost):
     console.print(
         Text(
             f"Are {question.compare} of {question.outcome or 'the outcome'}{unit} equal in "
-            f"{len(study.group_names)} groups ({', '.join(study.group_names)})? Scale {question.scale}, centre {question.centre:g}, "
-            f"level {', '.join(f'{level:g}' for level in study.levels)}.\n"
+            f"{len(study.group_names)} groups ({', '.join(study.group_names)})? Scale {question.scale}, "
+            f"centre {question.centre:g}, level {', '.join(f'{level:g}' for level in study.levels)}.\n"
         )
     )
     console.print(conditions_table(study, found[:MOST_SHOWN]))
