@@ -9,6 +9,7 @@ import pandas as pd
 from workbench import run as running
 from workbench import study as files
 from workbench.checks import CHECKS
+from workbench.cores import default_workers
 from workbench.errors import StudyError
 from workbench.grid import conditions, holds_as_recorded, recorded_quantities
 from workbench.methods import METHODS
@@ -78,8 +79,8 @@ class Study:
 
         Raises WorkbenchError where the result directory cannot be used.
         """
-        plan = running.with_overrides(self.plan, seed, replications)
-        workers = workers or running.default_workers()
+        plan = files.with_overrides(self.plan, seed, replications)
+        workers = workers or default_workers()
         return Result(running.run(plan, out or running.default_directory(plan), workers, watch))
 
     def _repr_html_(self):

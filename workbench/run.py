@@ -13,7 +13,6 @@ from workbench.decide import Decision, decided
 from workbench.errors import WorkbenchError, WorkError
 from workbench.grid import conditions
 from workbench.ledger import FORMAT, Ledger
-from workbench.places import replace_setting
 from workbench.plan import plan_of, tally_count
 from workbench.study import Study, parse
 from workbench.table import Tables, tabulated
@@ -49,22 +48,6 @@ class Progress:
 def default_directory(study):
     """Where a study's results go if nothing else is said."""
     return Path("results") / study.stem
-
-
-def default_workers():
-    """The cores this process may use."""
-    if hasattr(os, "sched_getaffinity"):
-        return len(os.sched_getaffinity(0))
-    return os.cpu_count() or 1
-
-
-def with_overrides(study, seed=None, replications=None):
-    """The study with another seed or number of replications, written into its text."""
-    text = study.text
-    for name, value in (("seed", seed), ("replications", replications)):
-        if value is not None and getattr(study.simulation, name) != value:
-            text = replace_setting(text, ("simulation", name), str(value))
-    return study if text == study.text else parse(text, study.file)
 
 
 def run(study, directory, workers, watch=lambda progress: None):

@@ -7,6 +7,7 @@ from workbench.errors import StudyError, WorkbenchError
 from workbench.factors import Factors, read_factors
 from workbench.judges import read_judges
 from workbench.keys import content_key
+from workbench.places import replace_setting
 from workbench.reader import Reader
 from workbench.registry import shown
 from workbench.sections import Criteria, Question, Simulation, read_criteria, read_question, read_simulation
@@ -130,3 +131,12 @@ def read_group_names(reader, groups):
     if groups is not None and len(names) != groups:
         reader.wrong(path, f"{groups} names wanted, one per group of [vary.sizes]; got {len(names)}")
     return tuple(names)
+
+
+def with_overrides(study, seed=None, replications=None):
+    """The study with another seed or number of replications, written into its text."""
+    text = study.text
+    for name, value in (("seed", seed), ("replications", replications)):
+        if value is not None and getattr(study.simulation, name) != value:
+            text = replace_setting(text, ("simulation", name), str(value))
+    return study if text == study.text else parse(text, study.file)

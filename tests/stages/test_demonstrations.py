@@ -7,6 +7,7 @@ import pandas as pd
 import pytest
 
 from workbench import run
+from workbench.cores import default_workers
 from workbench.decide import Status
 from workbench.study import read
 
@@ -33,7 +34,7 @@ def compared(name, directory):
 
 @pytest.mark.heavy
 def test_the_demonstration_gives_the_committed_tables(tmp_path):
-    outcome = run.run(read(ROOT / "experiments" / "lap_shear.toml"), tmp_path, run.default_workers())
+    outcome = run.run(read(ROOT / "experiments" / "lap_shear.toml"), tmp_path, default_workers())
     for name in ("table.csv", "differences.csv", "branches.csv"):
         compared(name, tmp_path)
     assert outcome.decision.status in (Status.CHOSEN, Status.TIE)
@@ -66,7 +67,7 @@ last_larger  last_double   last_one brown_forsythe_f 0.291822
 def test_published_rates_are_found_again(tmp_path):
     """Delacre, Leys, Mora & Lakens (2019), open workbook, sheet Normal, K = 3; 1,000,000 replications a cell."""
     outcome = run.run(
-        read(ROOT / "experiments" / "unequal_spread_published.toml"), tmp_path, run.default_workers()
+        read(ROOT / "experiments" / "unequal_spread_published.toml"), tmp_path, default_workers()
     )
     rates = outcome.tables.rates.set_index(["sizes", "spread", "difference", "method"])
     z = []

@@ -16,7 +16,7 @@ from workbench.errors import WorkbenchError, WorkError
 from workbench.ledger import Ledger
 from workbench.plan import plan_of
 from workbench.records import difference_key
-from workbench.study import parse
+from workbench.study import parse, with_overrides
 
 TEXT = """\
 format = 1
@@ -152,7 +152,7 @@ def test_another_seed_gives_other_counts_and_is_not_added_to_a_ledger(tmp_path):
 
 
 def test_overrides_go_into_the_experiment_that_is_kept(tmp_path):
-    study = run.with_overrides(parse(TEXT, "x.toml"), seed=5, replications=2000)
+    study = with_overrides(parse(TEXT, "x.toml"), seed=5, replications=2000)
     run.run(study, tmp_path, 1)
     kept = parse((tmp_path / "experiment.toml").read_text(encoding="utf-8"), "x.toml")
     assert (kept.simulation.seed, kept.simulation.replications) == (5, 2000)

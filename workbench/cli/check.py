@@ -5,6 +5,7 @@ from rich.text import Text
 
 from workbench import estimate
 from workbench.cli import options, terminal
+from workbench.cores import default_workers
 from workbench.grid import (
     answering,
     conditions,
@@ -14,8 +15,7 @@ from workbench.grid import (
 )
 from workbench.numbers import duration, storage
 from workbench.plan import plan_of
-from workbench.run import default_workers, with_overrides
-from workbench.study import read
+from workbench.study import read, with_overrides
 from workbench.wording import plural
 
 MOST_SHOWN = 200

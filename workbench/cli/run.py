@@ -7,9 +7,10 @@ from workbench.cli import options
 from workbench.cli.decide import exit_status
 from workbench.cli.progress import Reporter, silent
 from workbench.cli.summary import print_outcome
+from workbench.cores import default_workers
 from workbench.errors import WorkError
-from workbench.run import default_directory, default_workers, run, with_overrides
-from workbench.study import read
+from workbench.run import default_directory, run
+from workbench.study import read, with_overrides
 
 
 @click.command("run")
