@@ -11,8 +11,8 @@ from workbench.streams import Lane, stream
 REPLICATIONS = 2000
 """Replications of a chunk; part of the format, and a multiple of 8 so that bits fill their bytes."""
 
-BLOCK_VALUES = 61440
-"""Values drawn and judged at a time, so that they stay in a processor's cache; part of the format."""
+BLOCK_VALUES = 131_072
+"""Values drawn and judged at a time, so that they stay near the processor; part of the format."""
 
 
 def judged(task):
@@ -54,7 +54,7 @@ class Streams:
     """The generators of a chunk; every difference starts its disturbances and methods anew."""
 
     def __init__(self, task, chunk):
-        key = mechanism.stream_key(task.setting)
+        key = mechanism.stream_key(task.setting.key)
         self.data = stream(task.seed, Lane.DATA, chunk, key)
         self.disturbances, self.methods = {}, {}
         for want in task.wants:
@@ -83,7 +83,7 @@ def outcome(method, batch, rngs):
 
 def tally(task, chunk, difference, method, outcomes):
     """The Tally of one method under one difference, from the outcomes of all blocks."""
-    p = np.concatenate([values for values, _ in outcomes])
+    p = outcomes[0][0] if len(outcomes) == 1 else np.concatenate([values for values, _ in outcomes])
     ends = [taken for _, taken in outcomes if taken is not None]
     return Tally(
         setting=task.setting.key,

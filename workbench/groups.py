@@ -1,9 +1,11 @@
 """Batch: R datasets of k groups side by side, with what methods share worked out once."""
 
-from functools import cached_property, lru_cache
+from dataclasses import replace
+from functools import cached_property
 
 import numpy as np
 
+from workbench.moments import Moments, deviations_of, group_places, moments_of
 from workbench.ranks import mid_ranks, rank_sums_and_ties
 
 
@@ -16,16 +18,18 @@ class Batch:
 
     def __init__(self, values, sizes):
         """Take (R, N) values and the k sizes; raises ValueError where they do not fit."""
-        self.designed = tuple(int(size) for size in sizes)
         values = np.asarray(values, dtype=float)
-        if values.ndim != 2 or values.shape[1] != sum(self.designed):
-            wanted = sum(self.designed)
-            raise ValueError(
-                f"values of shape (R, {wanted}) wanted for sizes {self.designed}; got {values.shape}"
-            )
+        sizes = tuple(int(size) for size in sizes)
+        if values.ndim != 2 or values.shape[1] != sum(sizes):
+            wanted = f"values of shape (R, {sum(sizes)}) wanted for sizes {sizes}"
+            raise ValueError(f"{wanted}; got {values.shape}")
         self.columns = np.ascontiguousarray(values.T)
-        self.replications = values.shape[0]
-        self._parent, self._root, self.memory = None, self, {}
+        self.begin(sizes, len(values))
+
+    def begin(self, designed, replications, root=None):
+        """Set what every batch has: designed sizes, R, and an empty memory; root is the batch this is a shift of."""
+        self.designed, self.replications = designed, replications
+        self.root, self.memory = root or self, {}
 
     @classmethod
     def of_columns(cls, columns, sizes):
@@ -34,26 +38,21 @@ class Batch:
 
     def shifted(self, by):
         """The same datasets with group i moved by by[i]; what no shift changes is shared with them."""
-        return self._moved(self._root, 1.0, np.asarray(by, dtype=float))
+        return Shifted(self, np.asarray(by, dtype=float))
 
     def scaled(self, by):
         """The same datasets with all values of group i multiplied by by[i]."""
-        return self._moved(None, np.asarray(by, dtype=float), 0.0)
+        return Scaled(self, np.asarray(by, dtype=float))
 
-    def _moved(self, root, factors, shifts):
-        """A batch of factors * values + shifts, whose values are worked out only where something asks for them."""
-        batch = Batch.__new__(Batch)
-        batch.designed, batch.replications = self.designed, self.replications
-        batch._parent, batch._factors, batch._shifts = self, factors, shifts
-        batch._root, batch.memory = root or batch, {}
-        return batch
+    def shared(self, function):
+        """function(batch), worked out once for this batch."""
+        if function not in self.memory:
+            self.memory[function] = function(self)
+        return self.memory[function]
 
-    @cached_property
-    def columns(self):
-        """(N, R) values, one row for each place in a dataset."""
-        if self._root is not self:
-            return self._parent.columns + np.repeat(self._shifts, self.designed)[:, None]
-        return self._parent.columns * np.repeat(self._factors, self.designed)[:, None]
+    def shift_free(self, function):
+        """function(batch), worked out once for all shifts of these datasets: for what no shift changes."""
+        return self.root.shared(function)
 
     @property
     def values(self):
@@ -69,66 +68,40 @@ class Batch:
         """(n, R) values of one group."""
         return self.columns[group_places(self.designed)[group]]
 
-    def rows(self, some):
-        """(r, N) values of some replications (a slice), as an array of its own with datasets side by side."""
-        if self._parent is None:
-            found = self.columns[:, some].T.copy(order="C")
-            found += 0.0  # -0.0 becomes 0.0, with which it ties
-            return found
-        found = self._parent.rows(some)
-        if self._root is self:
-            found *= np.repeat(self._factors, self.designed)
-        else:
-            found += np.repeat(self._shifts, self.designed)
-        return found
+    def block(self, some):
+        """(N, r) values of some replications (a slice), a new array; a shift common to all groups may be left out."""
+        return self.columns[:, some].copy()
 
-    def shared(self, function):
-        """function(batch), worked out once for this batch."""
-        if function not in self.memory:
-            self.memory[function] = function(self)
-        return self.memory[function]
-
-    def shift_free(self, function):
-        """function(batch), worked out once for all shifts of these datasets: for what no shift changes."""
-        return self._root.shared(function)
-
-    @property
+    @cached_property
     def moments(self):
-        """(sizes, means, variances) of the datasets before they were shifted."""
-        return self.shift_free(moments)
-
-    @property
-    def origin(self):
-        """(R, 1) first value present in each dataset."""
-        return self.shared(origin)
+        """The Moments of the groups."""
+        return moments_of(self.columns, self.designed)
 
     @property
     def sizes(self):
         """(R, k) numbers of values present, or (1, k) where nothing is missing in any dataset."""
-        return self.moments[0]
-
-    @property
-    def total(self):
-        """(R,) or (1,) number of values in a dataset."""
-        return self.shift_free(totals)
+        return self.moments.sizes
 
     @property
     def means(self):
-        """(R, k) group means, measured from one value of the dataset.
+        """(R, k) group means, measured from `moments.origin`.
 
-        Tests see differences of means only; measured so, they keep their digits however far from zero the
-        data lie.
+        Tests see differences of means only; measured from a value near them, they keep their digits.
         """
-        return self.shared(means)
+        return self.moments.means
 
     @property
     def variances(self):
         """(R, k) sample variances in squared units of the values, divisor n - 1.
 
-        Two passes about the mean (Chan, Golub & LeVeque 1983, The American Statistician 37, 242-247). NaN
-        where a group has fewer than two values; exactly 0 where all its values are equal.
+        NaN where a group has fewer than two values; exactly 0 where all its values are equal.
         """
-        return self.moments[2]
+        return self.moments.variances
+
+    @property
+    def total(self):
+        """(R,) or (1,) number of values in a dataset."""
+        return self.shift_free(total)
 
     @property
     def grand_mean(self):
@@ -166,14 +139,77 @@ class Batch:
         return self.shared(rank_state)[1]
 
 
+class Shifted(Batch):
+    """Datasets of another batch with each group moved; values are worked out only where something asks for them."""
+
+    def __init__(self, of, by):
+        """Move group i by by[i]."""
+        self.begin(of.designed, of.replications, of.root)
+        self._of, self._by = of, by
+        self._column = np.repeat(by, of.designed)[:, None]
+
+    @cached_property
+    def columns(self):
+        """(N, R) values."""
+        return self._of.columns + self._column
+
+    def block(self, some):
+        """(N, r) values of some replications, but for a shift common to all groups."""
+        found = self._of.block(some)
+        for place, by in zip(group_places(self.designed), self._by - self._by[0], strict=True):
+            if by:
+                found[place] += by
+        return found
+
+    @cached_property
+    def moments(self):
+        """The Moments, of which a shift changes only the means."""
+        return replace(self._of.moments, means=self._of.moments.means + self._by)
+
+
+class Scaled(Batch):
+    """Datasets of another batch with each group multiplied; values are worked out only where something asks."""
+
+    def __init__(self, of, by):
+        """Multiply group i by by[i]."""
+        self.begin(of.designed, of.replications)
+        self._of, self._by = of, by
+        self._column = np.repeat(by, of.designed)[:, None]
+
+    @cached_property
+    def columns(self):
+        """(N, R) values."""
+        return self._of.columns * self._column
+
+    def block(self, some):
+        """(N, r) values of some replications, which must not lack a common shift: groups stretch apart."""
+        found = self._of.columns[:, some].copy()
+        for place, by in zip(group_places(self.designed), self._by, strict=True):
+            if by != 1:
+                found[place] *= by
+        return found
+
+    @cached_property
+    def moments(self):
+        """The Moments; groups stretch apart, so means are measured from zero."""
+        before = self._of.moments
+        means = (before.means + before.origin) * self._by
+        return Moments(before.sizes, means, before.variances * self._by**2, np.zeros_like(before.origin))
+
+
 def rank_state(batch):
     """((R, k) rank sums, (R,) tie sums) of a batch."""
-    return rank_sums_and_ties(batch.rows, batch.replications, batch.designed)
+    return rank_sums_and_ties(batch.block, batch.replications, batch.designed)
 
 
 def ranks(batch):
     """(R, N) mid-ranks of a batch."""
     return mid_ranks(batch.values)[0]
+
+
+def total(batch):
+    """(R,) or (1,) number of values in a dataset of a batch."""
+    return batch.sizes.sum(axis=1)
 
 
 def sum_between(batch):
@@ -183,90 +219,12 @@ def sum_between(batch):
 
 def sum_within(batch):
     """(R,) sum of squares within the groups of a batch."""
-    return ((batch.sizes - 1) * batch.variances).sum(axis=1)
-
-
-def totals(batch):
-    """(R,) or (1,) number of values in a dataset of a batch."""
-    return batch.sizes.sum(axis=1)
-
-
-def means(batch):
-    """(R, k) group means of a batch as Batch describes them."""
-    return batch.moments[1] if batch._root is batch else batch._parent.means + batch._shifts
-
-
-def moments(batch):
-    """((1, k) or (R, k) sizes, (R, k) means, (R, k) variances) of a batch that is no shift of another."""
-    parent = batch._parent
-    if parent is not None:
-        sizes, means, variances = parent.moments
-        return sizes, (means + parent.origin) * batch._factors, variances * batch._factors**2
-    means, variances = np.empty((2, batch.groups, batch.replications))
-    places = group_places(batch.designed)
-    for group, place in enumerate(places):
-        group_moments(batch.columns[place], means[group], variances[group])
-    if np.isnan(means).any():
-        return gappy_moments(batch)
-    sizes = np.array([batch.designed], dtype=float)
-    for group, place in enumerate(places[1:], start=1):
-        means[group] += batch.columns[place.start] - batch.columns[0]
-    return sizes, means.T, variances.T / (sizes - 1)
-
-
-@lru_cache(maxsize=1024)
-def group_places(sizes):
-    """The slices of a dataset's places that belong to each group."""
-    ends = np.cumsum(sizes).tolist()
-    return [slice(end - size, end) for end, size in zip(ends, sizes, strict=True)]
-
-
-def origin(batch):
-    """(R, 1) first value present in each dataset, from which means are measured."""
-    return first_values(batch.columns)[:, None]
-
-
-def first_values(members):
-    """(R,) first value present in each column of (n, R) values; NaN where there is none."""
-    if not np.isnan(members[0]).any():
-        return members[0]
-    return members[np.argmax(~np.isnan(members), axis=0), np.arange(members.shape[1])]
+    squares = (batch.sizes - 1) * batch.variances
+    if (batch.sizes <= 1).any():
+        squares = np.where(batch.sizes > 1, squares, 0.0)  # a single value does not vary
+    return squares.sum(axis=1)
 
 
 def deviations(batch):
-    """(N, R) values less the means of their groups: exactly 0 in a constant group, NaN where one is missing."""
-    away = [batch.members(group) - first_values(batch.members(group)) for group in range(batch.groups)]
-    return np.concatenate(
-        [group - np.nansum(group, axis=0) / (~np.isnan(group)).sum(axis=0) for group in away]
-    )
-
-
-def group_moments(members, means, squares):
-    """Write the (R,) means, from the first value, and (R,) sums of squares of (n, R) values into the given arrays.
-
-    A group of equal values must come out with variance exactly 0, and the mean of 0.1, 0.1, 0.1 is not 0.1:
-    so values are measured from the first of their group before they are averaged.
-    """
-    away = members - members[0]
-    np.add.reduce(away, axis=0, out=means)
-    means /= len(members)
-    away -= means
-    np.multiply(away, away, out=away)
-    np.add.reduce(away, axis=0, out=squares)
-
-
-def gappy_moments(batch):
-    """((R, k) sizes, (R, k) means, (R, k) variances) where values may be missing; a group without values has none."""
-    parts = [gappy_group(batch.members(group), batch.origin[:, 0]) for group in range(batch.groups)]
-    return tuple(np.stack(rows, axis=1) for rows in zip(*parts, strict=True))
-
-
-def gappy_group(members, start):
-    """((R,) sizes, means from the start, variances) of (n, R) values of one group, of which some are NaN."""
-    present = ~np.isnan(members)
-    sizes = present.sum(axis=0).astype(float)
-    firsts = first_values(members)
-    away = np.where(present, members - firsts, 0.0)
-    means = away.sum(axis=0) / sizes
-    squares = (np.where(present, away - means, 0.0) ** 2).sum(axis=0)
-    return sizes, firsts - start + means, np.where(sizes > 1, squares / np.maximum(sizes - 1, 1), np.nan)
+    """(N, R) values less the means of their groups, of a batch."""
+    return deviations_of(batch.columns, batch.designed)

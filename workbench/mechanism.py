@@ -1,5 +1,7 @@
 """Mechanism: what turns a setting and a difference into datasets."""
 
+from functools import lru_cache
+
 import numpy as np
 
 from workbench.groups import Batch
@@ -10,9 +12,10 @@ VERSION = 1
 """Raised by whoever changes the numbers drawn."""
 
 
+@lru_cache(maxsize=1024)
 def stream_key(setting):
-    """Content key of the data streams of a setting."""
-    return content_key([setting.key, VERSION])
+    """Content key of the data streams of a setting, given its key."""
+    return content_key([setting, VERSION])
 
 
 def draw(setting, rng, replications):

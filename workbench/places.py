@@ -41,7 +41,7 @@ class Places:
     """Where the keys and values of a TOML text stand, by paths such as ("vary", "spread", "equal", 2).
 
     `keys` holds offsets and `values` spans of characters; `headers` holds where the line below a table's
-    header begins; `dotted` has the tables made by dotted keys; `closing` is the key of the end of the text.
+    header begins; `dotted` has the tables made by dotted keys; `closing` is the key that belongs to its end.
     The text has passed tomllib, or is the part of a text that tomllib had read when it met a repeated key.
     """
 
@@ -111,7 +111,7 @@ class Places:
         composed = self.text[position] in "[{"
         end = self._items(position, path) if composed else SINGLE.match(self.text, position).end()
         self.keys.setdefault(path, position)
-        self.values.setdefault(path, (position, end))
+        self.values[path] = (position, end)
         return end
 
     def _items(self, position, path):

@@ -1,61 +1,100 @@
 """Rank sums of many datasets at once, ties as mid-ranks."""
 
+from dataclasses import dataclass
+from functools import lru_cache
+
 import numpy as np
 
 ROWS = 256
 """Datasets ranked at a time: few enough to stay in a processor's cache."""
 
+FEW = 0.2
+"""Up to this share of datasets with ties at a time, they are ranked one by one."""
 
-def rank_sums_and_ties(rows, replications, sizes):
+
+MANY = 16
+"""More groups than that are summed by counting, fewer one after the other."""
+
+
+@dataclass(frozen=True)
+class Layout:
+    """What ranking needs to know of a design of k groups: the same for all datasets."""
+
+    labels: np.ndarray
+    """(N,) number of the group that each place belongs to."""
+    tiled: np.ndarray
+    """(ROWS, N) the same for many datasets, in 32 bits."""
+    mask: int
+    """The lowest bits, which hold a label."""
+
+    @property
+    def groups(self):
+        """k, the number of groups."""
+        return int(self.labels[-1]) + 1
+
+
+@lru_cache(maxsize=64)
+def layout_of(sizes):
+    """The Layout of a design."""
+    labels = np.repeat(np.arange(len(sizes)), sizes)
+    mask = (1 << (len(sizes) - 1).bit_length()) - 1
+    tiled = np.ascontiguousarray(np.broadcast_to(labels.astype(np.int32), (ROWS, len(labels))))
+    return Layout(labels, tiled, mask)
+
+
+def rank_sums_and_ties(block, replications, sizes):
     """((R, k) sums of mid-ranks, (R,) sums of t^3 - t over ties) of R datasets; NaN is a missing value.
 
-    rows(slice) gives some of the datasets as a new (r, N) array, without negative zeros. Group numbers are
-    written into the lowest bits of the values, which are then sorted in place. A dataset in which that device
-    makes a tie of values that differ, or that holds an infinite or missing value, is ranked anew without it, so
-    that the result is exact for every dataset.
+    block(slice) gives some of the datasets as an (N, r) array. Values are shortened to
+    32 bits, group numbers are written into the lowest of these, and they are sorted in place. Shortening keeps
+    the order but may make ties; a dataset in which it makes a tie of values that differ, or that holds an
+    infinite or missing value, is ranked anew without it, so that the result is exact for every dataset.
     """
-    labels = np.repeat(np.arange(len(sizes)), sizes)
-    sums = np.empty((len(sizes), replications)).T
+    layout = layout_of(tuple(sizes))
+    sums = np.empty((layout.groups, replications)).T
     ties = np.zeros(replications)
     for start in range(0, replications, ROWS):
         some = slice(start, min(start + ROWS, replications))
-        found, tied, doubtful = packed_order(rows(some), labels, len(sizes))
-        if tied is None:
-            sums[some] = sums_by_label(found, len(sizes))
+        values = block(some)
+        found, tied, doubtful = packed_order(values, layout)
+        if tied is None or (uneven := tied.any(axis=1)).mean() <= FEW:
+            sums[some] = sums_by_label(found, layout.groups)
+            doubtful |= False if tied is None else uneven
         else:
-            sums[some], ties[some] = tied_sums(found, tied, len(sizes))
-            doubtful |= falsely_tied(rows(some), tied)
+            sums[some], ties[some] = tied_sums(found, tied, layout.groups)
+            doubtful |= falsely_tied(values, tied)
         if doubtful.any():
             where = np.flatnonzero(doubtful)
-            sums[start + where], ties[start + where] = exact_rank_sums(rows(some)[where], labels, len(sizes))
+            sums[start + where], ties[start + where] = exact_rank_sums(values.T[where], layout)
     return sums, ties
 
 
-def packed_order(values, labels, groups):
+def packed_order(values, layout):
     """(labels in the order of the values, neighbours tied or None where none are, datasets that hold a NaN).
 
-    Shapes (R, N), (R, N - 1), (R,); the (R, N) values are used up. Values count as tied that agree in all bits
-    above those that a label takes.
+    Shapes (R, N), (R, N - 1), (R,) for (N, R) values. Values count as tied that agree in all bits above those that a
+    label takes.
     """
-    mask = (1 << (groups - 1).bit_length()) - 1
-    bits = values.view(np.int64)
-    bits &= ~mask
-    bits |= labels
-    values.sort(axis=1)
-    missing = np.isnan(values[:, -1])
+    short = values.T.astype(np.float32, order="C")
+    bits = short.view(np.int32)
+    bits &= ~layout.mask
+    short += np.float32(0)  # -0.0 becomes 0.0, with which it ties
+    bits |= layout.tiled[: len(bits)]
+    short.sort(axis=1)
+    missing = np.isnan(short[:, -1])
     # Neighbours across the end of a row are compared too: one look at all is cheaper than one at each row.
-    apart = np.bitwise_xor(bits.reshape(-1)[1:], bits.reshape(-1)[:-1]).view(np.uint64)
+    apart = np.bitwise_xor(bits.reshape(-1)[1:], bits.reshape(-1)[:-1]).view(np.uint32)
     tied = None
-    if apart.min(initial=mask + 1) <= mask:
-        tied = np.append(apart <= mask, False).reshape(bits.shape)[:, :-1]
-    bits &= mask
+    if apart.min(initial=layout.mask + 1) <= layout.mask:
+        tied = np.append(apart <= layout.mask, False).reshape(bits.shape)[:, :-1]
+    bits &= layout.mask
     return bits, tied, missing
 
 
 def falsely_tied(values, tied):
     """(R,) bool: datasets of which some neighbours in order differ although they count as tied."""
-    values.sort(axis=1)
-    return ((values[:, 1:] == values[:, :-1]) != tied).any(axis=1)
+    ordered = np.sort(values.T, axis=1)
+    return ((ordered[:, 1:] == ordered[:, :-1]) != tied).any(axis=1)
 
 
 def tied_sums(found, tied, groups):
@@ -72,39 +111,38 @@ def tied_sums(found, tied, groups):
     last = np.minimum.accumulate(np.where(joined[1:], total, places)[::-1], axis=0)[::-1]
     twice = first + last + 2
     labels = found.T.astype(np.int16)
-    sums = [np.add.reduce(twice * (labels == group), axis=0, dtype=whole) / 2 for group in range(groups - 1)]
-    sums.append(total * (total + 1) / 2 - sum(sums))
+    sums = np.empty((groups, replications))
+    for group in range(groups - 1):
+        sums[group] = np.add.reduce(twice * (labels == group), axis=0, dtype=whole)
+    sums[:-1] /= 2
+    sums[-1] = total * (total + 1) / 2 - sums[:-1].sum(axis=0)
     lengths = (last - first + 1).astype(float)
-    return np.stack(sums, axis=1), np.square(lengths, out=lengths).sum(axis=0) - total
+    return sums.T, np.square(lengths, out=lengths).sum(axis=0) - total
 
 
 def sums_by_label(found, groups):
-    """(R, k) sums of the positions 1 … N by the label found there, (R, N).
-
-    Sums of whole numbers: several of them are packed side by side into one double, where they stay exact.
-    """
+    """(R, k) sums of the positions 1 … N by the label found there, (R, N): whole numbers, exact in any order."""
     replications, total = found.shape
-    width = (total * (total + 1) // 2).bit_length()
-    together = 52 // width
-    positions = np.arange(1.0, total + 1)
+    if groups > MANY:
+        cells = found + groups * np.arange(replications)[:, None]
+        weights = np.broadcast_to(np.arange(1.0, total + 1), found.shape).ravel()
+        return np.bincount(cells.ravel(), weights, groups * replications).reshape(replications, groups)
+    # Sums of whole numbers below 2^24 are exact in 32 bits too.
+    positions = np.arange(1, total + 1, dtype=np.float32 if total < 5000 else np.float64)
     sums = np.empty((groups, replications))
-    for first in range(0, groups - 1, together):
-        members = range(first, min(first + together, groups - 1))
-        worth = np.zeros(1 << (groups - 1).bit_length())
-        worth[first : members.stop] = 2.0 ** (width * np.arange(len(members)))
-        packed = (worth.take(found) @ positions).astype(np.int64)
-        for member in members:
-            sums[member] = packed & ((1 << width) - 1)
-            packed >>= width
+    for group in range(groups - 1):
+        sums[group] = (found == group) @ positions
     sums[-1] = total * (total + 1) / 2 - sums[:-1].sum(axis=0)
     return sums.T
 
 
-def exact_rank_sums(values, labels, groups):
+def exact_rank_sums(values, layout):
     """((R, k) sums of mid-ranks, (R,) tie sums) of (R, N) values, by a plain sort."""
     ranks, ties = mid_ranks(values)
-    sums = [np.where(labels == group, ranks, 0.0).sum(axis=1) for group in range(groups)]
-    return np.stack(sums, axis=1), ties
+    groups = range(layout.groups)
+    return np.stack(
+        [np.where(layout.labels == group, ranks, 0.0).sum(axis=1) for group in groups], axis=1
+    ), ties
 
 
 def mid_ranks(values):

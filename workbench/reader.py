@@ -19,6 +19,11 @@ class Reader:
             self.document = tomllib.loads(text)
         except tomllib.TOMLDecodeError as error:
             raise StudyError([Mistake(file, *syntax_place(error, text))]) from None
+        except (ValueError, RecursionError):
+            sentence = (
+                "a number of thousands of digits, or hundreds of brackets within one another, cannot be read"
+            )
+            raise StudyError([Mistake(file, 1, 1, sentence)]) from None
         self.places = Places(text)
 
     def wrong(self, path, text):

@@ -8,7 +8,7 @@ import workbench
 HOUSE = Path(workbench.__file__).parent
 
 ROOMS = """
-errors keys cores records registry places streams quadrature population ranks groups tails significance
+errors keys cores records registry places streams quadrature population ranks moments groups tails significance
 histogram numbers
 shapes disturbances estimands methods checks measures criteria routes
 reader sections factors judges study mechanism grid theory

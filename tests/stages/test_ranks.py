@@ -64,15 +64,25 @@ def assert_ranks_are_right(values, sizes):
     batch = Batch(values, sizes)
     expected = np.array([ranks_of(row) for row in values])
     starts = np.cumsum((0, *sizes))[:-1]
-    np.testing.assert_array_equal(batch.ranks, expected)
-    np.testing.assert_array_equal(batch.rank_sums, np.add.reduceat(expected, starts, axis=1))
-    np.testing.assert_array_equal(batch.tie_sums, [tie_sum(row) for row in values])
+    with np.errstate(all="ignore"):
+        ranks, sums, ties = batch.ranks, batch.rank_sums, batch.tie_sums
+    np.testing.assert_array_equal(ranks, expected)
+    np.testing.assert_array_equal(sums, np.add.reduceat(expected, starts, axis=1))
+    np.testing.assert_array_equal(ties, [tie_sum(row) for row in values])
 
 
 @steady
 @given(batches())
 def test_ranks_are_those_of_scipy(drawn):
     assert_ranks_are_right(*drawn)
+
+
+@pytest.mark.parametrize("scale", [1e-320, 1e-300, 1e-42, 1e-38, 1e-30, 1e30, 1e38, 1e39, 1e300])
+def test_ranks_are_right_at_any_magnitude(scale):
+    """Also where values fall below or rise above what a shorter number can hold."""
+    values = np.round(np.random.default_rng(6).standard_normal((300, 15)), 1) * scale
+    values[::2] += np.random.default_rng(7).standard_normal((150, 15)) * scale / 8
+    assert_ranks_are_right(values, (4, 6, 5))
 
 
 @pytest.mark.parametrize("replications", [1, 255, 256, 257, 600])
@@ -115,6 +125,7 @@ def test_true_ties_beside_values_one_bit_away_are_told_apart():
 def test_both_zeros_tie_and_differ_from_the_smallest_numbers():
     values = np.array([[-0.0, 0.0, 5e-324, -5e-324, 0.0, -0.0, 1e-323, -1e-323]])
     assert_ranks_are_right(values, (3, 2, 3))
+    assert_ranks_are_right(np.array([[0.0, -5e-324, 0.0]]), (2, 1))
 
 
 def test_many_values_keep_their_sums_exact():

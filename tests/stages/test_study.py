@@ -220,6 +220,12 @@ def test_bytes_that_are_no_text_are_refused_with_their_place(tmp_path):
         read(path)
 
 
+@pytest.mark.parametrize("monster", ["9" * 5000, "[" * 1000 + "]" * 1000])
+def test_monstrous_numbers_and_nesting_are_refused_with_a_sentence(monster):
+    with pytest.raises(StudyError, match="cannot be read"):
+        parse(f"a = {monster}\n", "x.toml")
+
+
 def test_everything_in_a_file_is_read():
     study = parse(GOOD, "folder/x.toml")
     assert study.title == study.stem == "x"

@@ -26,14 +26,23 @@ class LeveneMedian(Check):
 
 def levene(batch):
     """(R,) p-values: the classical F of the distances from the group medians."""
-    apart = [np.abs(members - medians(members)) for members in map(batch.members, range(batch.groups))]
-    return anova_tail(Batch.of_columns(np.concatenate(apart), batch.designed))
+    apart = np.concatenate([distances(batch.members(group)) for group in range(batch.groups)])
+    return anova_tail(Batch.of_columns(apart, batch.designed))
 
 
-def medians(members):
-    """(R,) medians of the values present in (n, R) values."""
+def distances(members):
+    """(n, R) distances of (n, R) values of one group from its median.
+
+    Worked out from the two middle values, so that both lie exactly equally far from the median between them.
+    """
+    low, high = middles(members)
+    return np.abs((members - low) - (high - low) / 2)
+
+
+def middles(members):
+    """((R,) lower, (R,) upper middle value present in (n, R) values), the same where their number is odd."""
     rows = np.sort(members.T, axis=1)  # NaN is sorted to the end
     present = len(members) - np.isnan(rows).sum(axis=1)
     low, high = np.maximum((present - 1) // 2, 0), np.minimum(present // 2, len(members) - 1)
     each = np.arange(len(rows))
-    return (rows[each, low] + rows[each, high]) / 2
+    return rows[each, low], rows[each, high]

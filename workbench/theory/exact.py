@@ -15,6 +15,9 @@ from workbench.theory.normal_f import classical_f_rate
 TOO_RARE = 3e-7
 """Chance of a count as far out on its side as one that is taken for a disagreement."""
 
+SETTLED = 1e-8
+"""A numerical error from here on means that a rate is not known: of a million replications none would notice."""
+
 SLACK = 5
 """How many times its numerical error a rate from theory is moved towards the count before it is judged."""
 
@@ -38,8 +41,9 @@ def exact_rate(condition, method, level):
 
 @lru_cache(maxsize=2**16)
 def remembered(sizes, spreads, means, level):
-    """classical_f_rate, worked out once."""
-    return classical_f_rate(sizes, spreads, means, level)
+    """classical_f_rate, worked out once; (NaN, NaN) where its integral does not settle."""
+    rate, error = classical_f_rate(sizes, spreads, means, level)
+    return (rate, error) if error < SETTLED else (np.nan, np.nan)
 
 
 @dataclass(frozen=True)

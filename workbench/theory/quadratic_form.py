@@ -26,7 +26,8 @@ def positive_share(weights, degrees, noncentralities):
     Chi-square j has degrees[j] degrees of freedom and noncentrality noncentralities[j], the sum of its squared
     means; all three are (m,) arrays. A chance near 0 has as many right digits as one near 1/2.
     """
-    form = Form(*(np.asarray(column, dtype=float) for column in (weights, degrees, noncentralities)))
+    columns = np.array([weights, degrees, noncentralities], dtype=float)
+    form = Form(*columns[:, columns[1] + columns[2] > 0])
     if form.mean <= 0:
         return upper_tail(form)
     tail, error = upper_tail(form.times(-1))
@@ -35,7 +36,7 @@ def positive_share(weights, degrees, noncentralities):
 
 @dataclass(frozen=True)
 class Form:
-    """A weighted sum of independent chi-squares, an (m,) array a field."""
+    """A weighted sum of independent chi-squares, none of them always 0, an (m,) array a field."""
 
     weights: np.ndarray
     degrees: np.ndarray
@@ -53,8 +54,8 @@ class Form:
 
     @property
     def largest_weight(self):
-        """Largest weight of a chi-square that is not always 0."""
-        return self.weights.max(initial=-np.inf, where=self.degrees + self.noncentralities > 0)
+        """The largest of the weights."""
+        return self.weights.max(initial=-np.inf)
 
     def times(self, factor):
         """The form of the sum times a factor."""
@@ -62,8 +63,8 @@ class Form:
 
     def cumulants(self, tilt):
         """(..., m): logarithms of the mean of exp(tilt * term), a term each; tilt is a (..., 1) array."""
-        rest = 1 - 2 * tilt * self.weights
-        return self.noncentralities * tilt * self.weights / rest - self.degrees / 2 * np.log(rest)
+        part = tilt * self.weights
+        return self.noncentralities * part / (1 - 2 * part) - self.degrees / 2 * np.log1p(-2 * part)
 
     def tilted(self, tilt):
         """The form whose density is that of the sum times exp(tilt * sum), brought back to area 1."""
@@ -74,10 +75,9 @@ class Form:
         """(logarithm of the modulus, angle) of the mean of exp(i y sum) at n values y, (n,) each (Imhof 1961)."""
         slopes = np.multiply.outer(y, 2 * self.weights)
         squares = slopes**2
-        modulus = np.log1p(squares) @ (self.degrees / 4) + squares / (1 + squares) @ (
-            self.noncentralities / 2
-        )
-        angle = np.arctan(slopes) @ (self.degrees / 2) + slopes / (1 + squares) @ (self.noncentralities / 2)
+        halves, shifts = self.degrees / 2, self.noncentralities / 2
+        modulus = np.log1p(squares) @ (halves / 2) + squares / (1 + squares) @ shifts
+        angle = np.arctan(slopes) @ halves + slopes / (1 + squares) @ shifts
         return -modulus, angle
 
 
