@@ -29,7 +29,12 @@ class Batch:
     def begin(self, designed, replications, root=None):
         """Set what every batch has: designed sizes, R, and an empty memory; root is the batch this is a shift of."""
         self.designed, self.replications = designed, replications
-        self.root, self.memory = root or self, {}
+        self._root, self.memory = root, {}
+
+    @property
+    def root(self):
+        """The batch that this is a shift of, or itself; not kept, since a circle would keep the memory from reuse."""
+        return self._root or self
 
     @classmethod
     def of_columns(cls, columns, sizes):

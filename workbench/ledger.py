@@ -4,8 +4,8 @@ import json
 import sqlite3
 import zlib
 from contextlib import contextmanager
-from dataclasses import dataclass
 from pathlib import Path
+from typing import NamedTuple
 
 import numpy as np
 
@@ -33,8 +33,7 @@ CREATE TABLE rejection (
 """
 
 
-@dataclass(frozen=True)
-class Row:
+class Row(NamedTuple):
     """A Tally in the form in which it is stored: keys as they are, everything else packed."""
 
     setting: str
@@ -257,19 +256,15 @@ def plain_row(row):
 
 
 def packed_bits(bits):
-    """Bits in the shortest form; a first byte says which: plain (0), compressed (1), or so many zero bytes (2)."""
+    """Bits as they are, but zeros alone as their number: a first byte says which. Others hardly get any shorter."""
     if not bits.strip(b"\x00"):
-        return b"\x02" + len(bits).to_bytes(4, "big")
-    short = zlib.compress(bits, QUICK)
-    return b"\x01" + short if len(short) < len(bits) else b"\x00" + bits
+        return b"\x01" + len(bits).to_bytes(4, "big")
+    return b"\x00" + bits
 
 
 def plain_bits(blob):
     """The bits that packed_bits was given."""
-    form, content = blob[0], blob[1:]
-    if form == 2:
-        return bytes(int.from_bytes(content, "big"))
-    return zlib.decompress(content) if form else content
+    return bytes(int.from_bytes(blob[1:], "big")) if blob[0] else blob[1:]
 
 
 def packed_counts(counts):

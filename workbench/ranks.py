@@ -5,8 +5,8 @@ from functools import lru_cache
 
 import numpy as np
 
-ROWS = 256
-"""Datasets ranked at a time: few enough to stay in a processor's cache."""
+RANKED = 65_536
+"""Values ranked at a time: few enough to stay in a processor's cache."""
 
 FEW = 0.2
 """Up to this share of datasets with ties at a time, they are ranked one by one."""
@@ -23,7 +23,7 @@ class Layout:
     labels: np.ndarray
     """(N,) number of the group that each place belongs to."""
     tiled: np.ndarray
-    """(ROWS, N) the same for many datasets, in 32 bits."""
+    """(r, N) the same for as many datasets as are ranked at a time, in 32 bits."""
     mask: int
     """The lowest bits, which hold a label."""
 
@@ -38,7 +38,8 @@ def layout_of(sizes):
     """The Layout of a design."""
     labels = np.repeat(np.arange(len(sizes)), sizes)
     mask = (1 << (len(sizes) - 1).bit_length()) - 1
-    tiled = np.ascontiguousarray(np.broadcast_to(labels.astype(np.int32), (ROWS, len(labels))))
+    at_once = max(1, RANKED // len(labels))
+    tiled = np.ascontiguousarray(np.broadcast_to(labels.astype(np.int32), (at_once, len(labels))))
     return Layout(labels, tiled, mask)
 
 
@@ -53,10 +54,11 @@ def rank_sums_and_ties(block, replications, sizes):
     layout = layout_of(tuple(sizes))
     sums = np.empty((layout.groups, replications)).T
     ties = np.zeros(replications)
-    for start in range(0, replications, ROWS):
-        some = slice(start, min(start + ROWS, replications))
+    at_once = len(layout.tiled)
+    for start in range(0, replications, at_once):
+        some = slice(start, min(start + at_once, replications))
         values = block(some)
-        found, tied, doubtful = packed_order(values, layout)
+        found, tied, doubtful = packed_order(values.T.astype(np.float32, order="C"), layout)
         if tied is None or (uneven := tied.any(axis=1)).mean() <= FEW:
             sums[some] = sums_by_label(found, layout.groups)
             doubtful |= False if tied is None else uneven
@@ -69,13 +71,12 @@ def rank_sums_and_ties(block, replications, sizes):
     return sums, ties
 
 
-def packed_order(values, layout):
+def packed_order(short, layout):
     """(labels in the order of the values, neighbours tied or None where none are, datasets that hold a NaN).
 
-    Shapes (R, N), (R, N - 1), (R,) for (N, R) values. Values count as tied that agree in all bits above those that a
-    label takes.
+    Shapes (R, N), (R, N - 1), (R,) for (R, N) values in 32 bits, which are used up. Values count as tied that agree
+    in all bits above those that a label takes.
     """
-    short = values.T.astype(np.float32, order="C")
     bits = short.view(np.int32)
     bits &= ~layout.mask
     short += np.float32(0)  # -0.0 becomes 0.0, with which it ties

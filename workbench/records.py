@@ -2,6 +2,7 @@
 
 from dataclasses import dataclass, field
 from functools import cached_property, lru_cache
+from typing import NamedTuple
 
 import numpy as np
 
@@ -100,8 +101,7 @@ class Task:
     wants: tuple
 
 
-@dataclass(frozen=True)
-class Tally:
+class Tally(NamedTuple):
     """What one method did under one difference in one chunk of R replications."""
 
     setting: str

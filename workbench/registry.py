@@ -87,6 +87,9 @@ class Shelf:
     def __contains__(self, name):
         return name in self._parts
 
+    def __repr__(self):
+        return f"<shelf of {self.kind}s>"
+
     def __getitem__(self, name):
         if name not in self._parts:
             raise KeyError(f"no {self.kind} is called '{name}'; {suggestion(name, self.names())}")

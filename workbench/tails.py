@@ -50,8 +50,12 @@ def chi_square_tail(df, x):
 
 def anova_tail(batch):
     """(R,) upper tail areas of the classical F (Fisher 1925); NaN where nothing varies within the groups."""
-    k = batch.groups
-    freedom = batch.total - k
-    within = batch.sum_within / freedom
-    f = batch.sum_between / (k - 1) / np.where(within > 0, within, np.nan)
-    return f_distribution_tail(k - 1, freedom, f)
+    within, freedom = batch.shift_free(within_groups)
+    return f_distribution_tail(batch.groups - 1, freedom, batch.sum_between / within)
+
+
+def within_groups(batch):
+    """((R,) mean square within the groups times k - 1, NaN where it is 0; (R,) its degrees of freedom)."""
+    freedom = batch.total - batch.groups
+    within = batch.sum_within * ((batch.groups - 1) / freedom)
+    return np.where(within > 0, within, np.nan), freedom

@@ -27,7 +27,7 @@ from workbench.streams import Lane, stream
 SIZES, SPREADS = (10, 20, 30), (3.0, 2.0, 1.0)
 THREE = ("classical_f", "welch_f", "brown_forsythe_f")
 FOUR = (*THREE, "kruskal_wallis")
-ROUNDS = 9
+ROUNDS = 7
 
 
 def setting():
@@ -42,7 +42,7 @@ def plan(methods, levels, replications):
     return Plan(1, replications, (0.05,), tuple(map(METHODS.make, methods)), {setting(): differences})
 
 
-def whole_run(methods, levels=1, replications=20_000):
+def whole_run(methods, levels=1, replications=400_000):
     """Seconds of a run with one worker, from drawing to the ledger on disk."""
     with tempfile.TemporaryDirectory() as folder, Ledger.writing(Path(folder) / "l", {"format": 1}) as ledger:
         work = plan(methods, levels, replications)
@@ -51,7 +51,7 @@ def whole_run(methods, levels=1, replications=20_000):
         return time.perf_counter() - start
 
 
-def drawing(replications=20_000):
+def drawing(replications=100_000):
     """Seconds NumPy needs to draw the same normals."""
     rng = stream(1, Lane.DATA, 0, "0" * 16)
     start = time.perf_counter()
@@ -167,20 +167,20 @@ def long_run(replications, workers):
 
 def main():
     """Print the table."""
-    draw = (drawing, 20_000)
+    draw = (drawing, 100_000)
     report(
         "F, Welch, Brown–Forsythe: whole run by drawing alone",
-        ratio((lambda: whole_run(THREE), 20_000), draw),
+        ratio((lambda: whole_run(THREE), 400_000), draw),
         2.1,
     )
-    report("the same with Kruskal–Wallis", ratio((lambda: whole_run(FOUR), 20_000), draw), 2.8)
-    ten = (lambda: whole_run(THREE, 10), 20_000)
+    report("the same with Kruskal–Wallis", ratio((lambda: whole_run(FOUR), 400_000), draw), 2.8)
+    ten = (lambda: whole_run(THREE, 10), 400_000)
     report(
         "ten differences by one: F, Welch, Brown–Forsythe",
-        ratio(ten, (lambda: whole_run(THREE), 20_000)),
+        ratio(ten, (lambda: whole_run(THREE), 400_000)),
         2.5,
     )
-    four = (lambda: whole_run(FOUR), 20_000)
+    four = (lambda: whole_run(FOUR), 400_000)
     report("loop over SciPy by whole run, four methods", ratio((scipy_loop, 100), four), 800, at_most=False)
     report(
         "SciPy over an axis by whole run, four methods",

