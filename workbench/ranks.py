@@ -5,7 +5,7 @@ from functools import lru_cache
 
 import numpy as np
 
-RANKED = 65_536
+RANKED = 131_072
 """Values ranked at a time: few enough to stay in a processor's cache."""
 
 FEW = 0.2

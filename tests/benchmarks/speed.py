@@ -1,7 +1,7 @@
 """Speed and memory as ratios: python tests/benchmarks/speed.py [--long]. Not collected by pytest.
 
 Each ratio is the median over rounds in which both sides are timed one after the other, because the speed of a shared
-machine drifts. --long adds two workers against one, and memory at 10,000,000 replications.
+machine drifts. --long adds two workers against one, and memory at 12,000,000 replications.
 """
 
 import resource
@@ -190,10 +190,10 @@ def main():
     )
     commands()
     if "--long" in sys.argv:
-        replications = 10_000_000
+        replications = 12_000_000
         one, two = long_run(replications, 1), long_run(replications, 2)
-        report("one worker by two, 10,000,000 replications", one[0] / two[0], 1.8, at_most=False)
-        report("largest process at 10,000,000 replications, MB", max(one[1], two[1]), 300)
+        report("one worker by two, 12,000,000 replications", one[0] / two[0], 1.8, at_most=False)
+        report("largest process at 12,000,000 replications, MB", max(one[1], two[1]), 300)
 
 
 if __name__ == "__main__":
