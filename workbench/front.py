@@ -1,6 +1,5 @@
 """Study and Result as a notebook meets them."""
 
-from collections.abc import Mapping
 from html import escape
 from pathlib import Path
 
@@ -8,48 +7,12 @@ import pandas as pd
 
 from workbench import run as running
 from workbench import study as files
-from workbench.checks import CHECKS
 from workbench.cores import default_workers
 from workbench.errors import StudyError
 from workbench.grid import conditions, holds_as_recorded, recorded_quantities
-from workbench.methods import METHODS
 from workbench.population import QUANTITIES
-from workbench.shapes import SHAPES
 
-__all__ = ["Result", "Study", "StudyError", "checks", "methods", "read", "shapes"]
-
-
-class Ready(Mapping):
-    """The parts of a shelf with their default settings, by name."""
-
-    def __init__(self, shelf):
-        self._shelf = shelf
-
-    def __getitem__(self, name):
-        return self._shelf.make(name)
-
-    def __iter__(self):
-        return iter(self._shelf.names())
-
-    def __len__(self):
-        return len(self._shelf.names())
-
-
-class Kinds(Ready):
-    """The classes on a shelf by name; call one with its settings."""
-
-    def __getitem__(self, name):
-        return self._shelf[name]
-
-
-methods = Ready(METHODS)
-"""The methods: workbench.methods["welch_f"].p_values(values, sizes)."""
-
-checks = Ready(CHECKS)
-"""What two-stage rules test first."""
-
-shapes = Kinds(SHAPES)
-"""The populations: workbench.shapes["lognormal"](sigma=0.6).true_quantities()."""
+__all__ = ["Result", "Study", "StudyError", "read"]
 
 
 def read(path):

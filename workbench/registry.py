@@ -5,6 +5,7 @@ from abc import ABC
 from dataclasses import MISSING, fields
 from functools import cached_property
 from importlib import import_module
+from types import ModuleType
 from typing import ClassVar
 
 from pydantic import ConfigDict, ValidationError
@@ -65,8 +66,9 @@ class SettingsError(ValueError):
 class Shelf:
     """Parts of one kind by name; `fill` finds every file of a package by itself."""
 
-    def __init__(self, kind):
-        self.kind = kind
+    def __init__(self, kind, ready=False):
+        """Begin an empty shelf; from a ready one the package offers parts with default settings, else classes."""
+        self.kind, self.ready = kind, ready
         self._parts = {}
 
     def add(self, part):
@@ -76,8 +78,10 @@ class Shelf:
         return part
 
     def fill(self, package):
-        """Import every module of the package, so that each can add its part."""
-        for module in pkgutil.iter_modules(import_module(package).__path__):
+        """Import every module of the package, so that each can add its part; the package then offers them by name."""
+        room = import_module(package)
+        room.__class__, room.SHELF = ShelfModule, self
+        for module in pkgutil.iter_modules(room.__path__):
             import_module(f"{package}.{module.name}")
 
     def names(self):
@@ -101,6 +105,22 @@ class Shelf:
             return self[name](**(settings or {}))
         except ValidationError as error:
             raise SettingsError(problems_of(error)) from None
+
+
+class ShelfModule(ModuleType):
+    """The package of a shelf, from which a notebook takes parts by name: workbench.methods["welch_f"]."""
+
+    def __getitem__(self, name):
+        return self.SHELF.make(name) if self.SHELF.ready else self.SHELF[name]
+
+    def __iter__(self):
+        return iter(self.SHELF.names())
+
+    def __len__(self):
+        return len(self.SHELF.names())
+
+    def __contains__(self, name):
+        return name in self.SHELF
 
 
 def problems_of(error):

@@ -6,7 +6,7 @@ from typing import ClassVar
 from workbench.registry import Shelf
 from workbench.significance import SignificanceTest
 
-CHECKS = Shelf("check")
+CHECKS = Shelf("check", ready=True)
 
 
 class Check(SignificanceTest, ABC):

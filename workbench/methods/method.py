@@ -6,7 +6,7 @@ from typing import ClassVar
 from workbench.registry import Shelf
 from workbench.significance import SignificanceTest
 
-METHODS = Shelf("method")
+METHODS = Shelf("method", ready=True)
 
 
 class Method(SignificanceTest, ABC):
