@@ -4,6 +4,7 @@ import os
 import signal
 import threading
 import time
+import warnings
 from collections import deque
 from dataclasses import replace
 from itertools import count
@@ -98,7 +99,10 @@ def in_parallel(bundles, workers):
             bundles.back(in_air.values())
             in_air.clear()
         finally:
-            finished.close()
+            with warnings.catch_warnings():
+                # joblib warns of work that is given up, as it is here on purpose.
+                warnings.simplefilter("ignore", UserWarning)
+                finished.close()
 
 
 def handed_out(bundles, workers, in_air):

@@ -236,7 +236,7 @@ def gone(group, seconds=10):
 @pytest.mark.heavy
 def test_killed_and_interrupted_runs_end_in_the_same_table(tmp_path):
     """kill -9 of the parent, Ctrl-C and a killed worker: no process is left, and the bytes come out the same."""
-    text = TEXT.replace("replications = 5000", "replications = 60000")
+    text = TEXT.replace("replications = 5000", "replications = 250000")
     (tmp_path / "x.toml").write_text(text, encoding="utf-8")
     wanted = table_of(text, tmp_path / "plain", workers=2)
     for blow, after in ((signal.SIGKILL, 2.5), (signal.SIGINT, 2.8), (signal.SIGKILL, 3.4)):
@@ -244,7 +244,7 @@ def test_killed_and_interrupted_runs_end_in_the_same_table(tmp_path):
         time.sleep(after)
         if blow is signal.SIGINT:
             os.killpg(process.pid, blow)
-            assert process.wait(20) in (130, 0, 3)
+            assert process.wait(20) == 130
         else:
             process.send_signal(blow)
             process.wait(20)

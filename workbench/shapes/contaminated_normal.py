@@ -3,7 +3,7 @@
 from typing import Annotated
 
 import numpy as np
-from annotated_types import Gt, Le, Lt
+from annotated_types import Ge, Gt, Le, Lt
 from scipy.special import ndtr
 
 from workbench.quadrature import inverted
@@ -12,7 +12,10 @@ from workbench.shapes.shape import SHAPES, Shape
 
 @SHAPES.add
 class ContaminatedNormal(Shape):
-    """Normal values of which a share `fraction` has `factor` times the standard deviation of the others."""
+    """Normal values of which a share `fraction` has `factor` times the standard deviation of the others.
+
+    A factor below 0.001 or above 1000 would leave the narrower part a point in all but name.
+    """
 
     name = "contaminated_normal"
     cite = (
@@ -21,7 +24,7 @@ class ContaminatedNormal(Shape):
     )
 
     fraction: Annotated[float, Gt(0), Lt(1)]
-    factor: Annotated[float, Gt(0), Le(1000)]
+    factor: Annotated[float, Ge(0.001), Le(1000)]
 
     def parts(self):
         """((2,) shares, (2,) standard deviations) of the clean and the contaminated values, brought to variance 1."""
@@ -60,6 +63,7 @@ class ContaminatedNormal(Shape):
         shares, spreads = self.parts()
         return float(3 * (shares * spreads**4).sum() - 3)
 
+    @np.errstate(over="ignore")
     def exponential_mean(self, rate):
         shares, spreads = self.parts()
         return float((shares * np.exp((rate * spreads) ** 2 / 2)).sum())

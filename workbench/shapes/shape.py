@@ -53,8 +53,9 @@ class Shape(Part, ABC):
         """Fourth standardised moment less 3; infinite or NaN where it is not finite or does not exist."""
         return over_shares(lambda share: self.quantile(share) ** 4) - 3
 
+    @np.errstate(over="ignore")
     def exponential_mean(self, rate):
-        """Mean of exp(rate * value), rate > 0; infinite where there is none.
+        """Mean of exp(rate * value), rate > 0; infinite where there is none or a double cannot hold it.
 
         The mean, and with 2, 3 and 4 times the rate the higher moments, on the multiplicative scale.
         """
@@ -124,5 +125,6 @@ class Asymmetric(Shape, ABC):
     def true_skewness(self):
         return -self.true_skewness_upright() if self.mirrored else self.true_skewness_upright()
 
+    @np.errstate(over="ignore")
     def exponential_mean(self, rate):
         return self.exponential_mean_upright(-rate if self.mirrored else rate)

@@ -11,7 +11,10 @@ from workbench.shapes.shape import SHAPES, Shape
 
 @SHAPES.add
 class StudentT(Shape):
-    """Values of Student's t with `df` degrees of freedom, above 2 so that there is a standard deviation."""
+    """Values of Student's t with `df` degrees of freedom, above 2 so that there is a standard deviation.
+
+    A million degrees of freedom, the most allowed, differ from the normal shape by less than a run can tell.
+    """
 
     name = "student_t"
     cite = "Johnson, N. L., Kotz, S. & Balakrishnan, N. (1995). Continuous Univariate Distributions 2, chapter 28"
