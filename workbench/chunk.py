@@ -25,20 +25,23 @@ def judged(task):
 def judged_chunk(task, chunk):
     """The Tallies of one chunk: its data are drawn once, for all differences and methods that are wanted."""
     streams = Streams(task, chunk)
-    gathered = {(want.difference, method): [] for want in task.wants for method in want.methods}
-    for replications in blocks(task.setting.total):
-        base = mechanism.draw(task.setting, streams.data, replications)
-        for want in task.wants:
-            batch = mechanism.recorded(
-                task.setting, base, want.difference, streams.disturbances[want.difference]
-            )
-            rngs = streams.methods[want.difference]
-            for method in want.methods:
-                gathered[want.difference, method].append(outcome(method, batch, rngs))
+    judged_blocks = [judged_block(task, streams, replications) for replications in blocks(task.setting.total)]
     return [
-        tally(task, chunk, difference, method, outcomes)
-        for (difference, method), outcomes in gathered.items()
+        tally(task, chunk, *place, [outcomes[place] for outcomes in judged_blocks])
+        for place in judged_blocks[0]
     ]
+
+
+def judged_block(task, streams, replications):
+    """{(difference, method): outcome} of the next replications of a chunk."""
+    base = mechanism.draw(task.setting, streams.data, replications)
+    found = {}
+    for want in task.wants:
+        disturbing, rngs = streams.disturbances[want.difference], streams.methods[want.difference]
+        batch = mechanism.recorded(task.setting, base, want.difference, disturbing)
+        for method in want.methods:
+            found[want.difference, method] = outcome(method, batch, rngs)
+    return found
 
 
 def settle_allocator():

@@ -82,7 +82,8 @@ class Decision:
 
 def decided(study, conditions, tables):
     """The Decision of a study from its tables."""
-    standings = [standing(study, conditions, judge, tables.rates) for judge in study.judges]
+    answers = answering(study, conditions)
+    standings = [standing(study, judge, answers[judge.name], tables.rates) for judge in study.judges]
     excluded = {one.name: wording.exclusion(study, one) for one in standings if not one.possible}
     status, chosen = choice(study, standings, tables)
     sentences = wording.decision(
@@ -100,7 +101,7 @@ def decided(study, conditions, tables):
     )
 
 
-def standing(study, conditions, judge, rates):
+def standing(study, judge, answers, rates):
     """The Standing of one method."""
     mine = rates[(rates["method"] == judge.name) & (rates["alpha"] == study.levels[0])]
     errors = mine[mine["reading"] == "error"]
@@ -111,7 +112,7 @@ def standing(study, conditions, judge, rates):
         judge.name,
         judge.label,
         judge.method.hypothesis,
-        answering(study, conditions)[judge.name],
+        answers,
         judge.name in study.criteria.admit,
         None if errors.empty else together(errors["verdict"]),
         None if study.criteria.power is None or detections.empty else together(detections["verdict"]),

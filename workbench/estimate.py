@@ -1,36 +1,48 @@
 """Estimate: how long a study will take and how much disk it needs, before it runs."""
 
 import time
-from dataclasses import replace
 
-from workbench.chunk import REPLICATIONS, judged
-from workbench.ledger import packed
+import numpy as np
+
+from workbench.chunk import REPLICATIONS, Streams, blocks, judged_block
 
 BYTES_A_TALLY = 430
 """Stored bytes of a tally with one level, measured; each further level adds LEVEL_BYTES."""
 
 LEVEL_BYTES = 220
 
+TALLY_SECONDS = 1e-4
+"""Seconds that counting, packing and storing one tally take, about."""
+
+PATIENCE = 0.2
+"""Seconds after which one look is enough."""
+
 TRIED = 3
-"""Settings of which one chunk is tried out, spread over all of them."""
+"""Settings of which some datasets are tried out, spread over all of them."""
 
 
 def seconds(plan, workers):
-    """Seconds the whole work will take with so many workers, from single chunks that are done and thrown away."""
+    """Seconds the whole work will take with so many workers, from a few datasets that are judged and thrown away."""
     tasks = plan.tasks()
-    step = max(1, len(tasks) // TRIED)
-    tried = tasks[::step][:TRIED]
-    per_look = [timed(replace(task, chunks=(0,))) / looks(task) for task in tried]
-    mean = sum(per_look) / len(per_look)
-    return sum(mean * looks(task) * len(task.chunks) for task in tasks) / workers
+    tried = tasks[:: max(1, len(tasks) // TRIED)][:TRIED]
+    rate = sum(chunk_seconds(task) / looks(task) for task in tried) / len(tried)
+    return plan.tallies * TALLY_SECONDS / workers + sum(
+        rate * looks(task) * len(task.chunks) / workers for task in tasks
+    )
 
 
-def timed(task):
-    """Seconds that a task takes."""
-    start = time.perf_counter()
-    for tally in judged(task):
-        packed(tally)
-    return time.perf_counter() - start
+def chunk_seconds(task):
+    """Seconds that judging a chunk of a task takes, from its first block; the second look finds warm caches."""
+    size, took = blocks(task.setting.total)[0], []
+    for chunk in (0, 1):
+        streams = Streams(task, chunk)
+        start = time.perf_counter()
+        with np.errstate(all="ignore"):
+            judged_block(task, streams, size)
+        took.append(time.perf_counter() - start)
+        if took[0] > PATIENCE:
+            break
+    return took[-1] * REPLICATIONS / size
 
 
 def looks(task):

@@ -7,8 +7,9 @@ from scipy.special import ndtr, ndtri
 
 from workbench.criteria import Verdict
 
-HARDLY = 20
-"""An open row that needs more than so many times the replications done will hardly be settled by more."""
+HARDLY, AFFORDABLE = 20, 1_000_000
+"""An open row that needs more than so many times the replications done, and more than so many in all, will hardly be
+settled by more."""
 
 
 def together(verdicts):
@@ -39,7 +40,7 @@ def advice(rejections, replications, limit, lower, upper, error):
     """
     within = max(upper - limit, limit - lower)
     q = (rejections + 0.5) / (replications + 1)
-    ceiling = HARDLY * replications
+    ceiling = max(HARDLY * replications, AFFORDABLE)
     if chance(ceiling, q, replications, limit, error) < 0.8:
         return Advice(None, within)
     low, high = 0, ceiling

@@ -1,6 +1,7 @@
 """What every estimand promises: a shape aligned on it has the compared quantity at 0, or at 1 as a factor."""
 
 from dataclasses import fields
+from itertools import pairwise
 
 import numpy as np
 import pytest
@@ -59,8 +60,8 @@ every_spread = pytest.mark.parametrize("spread", SPREADS)
 
 def integral(function, edges):
     """Integral from the first edge to the last, by scipy.integrate.quad from edge to edge."""
-    panels = zip(edges[:-1], edges[1:], strict=True)
-    return sum(integrate.quad(function, *panel, limit=200, epsabs=1e-12, epsrel=1e-11)[0] for panel in panels)
+    precision = {"limit": 200, "epsabs": 1e-12, "epsrel": 1e-11}
+    return sum(integrate.quad(function, *panel, **precision)[0] for panel in pairwise(edges))
 
 
 def edges_of(population):

@@ -1,6 +1,7 @@
 """Shapes against SciPy's distributions and integrals, brought to mean 0 and standard deviation 1."""
 
 from functools import partial
+from itertools import pairwise
 
 import numpy as np
 import pytest
@@ -15,11 +16,11 @@ SHARES = np.array([1e-12, 1e-8, 1e-4, 0.01, 0.1, 0.3, 0.5, 0.77, 0.95, 0.999, 1 
 
 def skew_normal(skewness):
     """SciPy's skew normal of a skewness: its slant solved for on SciPy's own moments."""
-    return stats.skewnorm(
-        optimize.brentq(
-            lambda slant: float(stats.skewnorm.stats(slant, moments="s")) - skewness, -300, 300, xtol=1e-13
-        )
-    )
+
+    def surplus(slant):
+        return float(stats.skewnorm.stats(slant, moments="s")) - skewness
+
+    return stats.skewnorm(optimize.brentq(surplus, -300, 300, xtol=1e-13))
 
 
 REFERENCES = {
@@ -40,7 +41,7 @@ SETTINGS = {
     "student_t": {"df": (2.01, 1e6)},
     "gamma": {"shape": (0.01, 1e6)},
 }
-"""Ranges of settings tried, by name of the shape: what is allowed, less the ends at which SciPy loses digits."""
+"""Ranges of settings tried, by name of the shape: those allowed, less ends at which SciPy loses digits."""
 
 
 def between(low, high):
@@ -63,7 +64,7 @@ def standardised(reference, values):
 
 
 def rounding(reference):
-    """What standardising costs: the rounding of the mean in units of the standard deviation, a few times over."""
+    """What standardising costs: the rounding of the mean, a few times over, in standard deviations."""
     return 1e-15 * (1 + abs(reference.mean()) / reference.std())
 
 
@@ -91,11 +92,11 @@ def test_quantiles_are_those_of_scipy(name, data):
 @some(max_examples=30)
 @given(data=st.data())
 def test_shares_are_those_of_scipy(name, data):
-    """scipy.stats 1.17, `cdf` at values on a grid and at rounded quantiles; its skew normal is right to 1e-10."""
+    """scipy.stats 1.17, `cdf` on a grid and at rounded quantiles; its skew normal is right to 1e-10."""
     shape, reference = data.draw(pairs(name))
     values = np.concatenate([np.linspace(-5, 5, 21), np.round(shape.quantile(SHARES), 3)])
     wanted = reference.cdf(reference.mean() + reference.std() * values)
-    # Within rounding of a lower end at which the density is infinite, neighbouring values differ by whole shares.
+    # Close to a lower end at which the density is infinite, neighbouring doubles are whole shares apart.
     clear = np.abs(values - shape.quantile(0.0)) > 1e-3
     assert clear.sum() > 10
     tolerance = 1e-10 if name == "skew_normal" else 1e-12
@@ -106,7 +107,7 @@ def test_shares_are_those_of_scipy(name, data):
 @some(max_examples=30)
 @given(data=st.data())
 def test_ends_are_those_of_scipy(name, data):
-    """scipy.stats 1.17, `support`; its lognormal's standard deviation loses digits to subtraction, hence 1e-11."""
+    """scipy.stats 1.17, `support`; its lognormal loses digits of the standard deviation, hence 1e-11."""
     shape, reference = data.draw(pairs(name))
     wanted = [standardised(reference, end) for end in reference.support()]
     np.testing.assert_allclose([shape.quantile(0.0), shape.quantile(1.0)], wanted, rtol=1e-11)
@@ -116,7 +117,7 @@ def test_ends_are_those_of_scipy(name, data):
 @some(max_examples=30)
 @given(data=st.data())
 def test_skewness_and_excess_kurtosis_are_those_of_scipy(name, data):
-    """scipy.stats 1.17, `stats`: NaN and infinite alike; its lognormal loses digits to subtraction, hence 1e-12."""
+    """scipy.stats 1.17, `stats`, NaN and infinite alike; its lognormal loses digits, hence 1e-12."""
     shape, reference = data.draw(pairs(name))
     wanted = [float(moment) for moment in reference.stats("sk")]
     found = [shape.true_skewness(), shape.true_excess_kurtosis()]
@@ -146,8 +147,7 @@ def mean_of_exponential(reference, rate):
     def integrand(value):
         return sd * np.exp(rate * value + reference.logpdf(mean + sd * value))
 
-    panels = zip(edges[:-1], edges[1:], strict=True)
-    return sum(integrate.quad(integrand, *panel, epsabs=1e-13, epsrel=1e-10)[0] for panel in panels)
+    return sum(integrate.quad(integrand, *panel, epsabs=1e-13, epsrel=1e-10)[0] for panel in pairwise(edges))
 
 
 NARROWED = {"gamma": {"shape": (0.7, 1e4)}, "lognormal": {"sigma": (0.05, 1.5)}}
@@ -212,27 +212,23 @@ def test_exponential_means_end_where_the_tail_outweighs_them(name, chosen, end):
     assert end == 0 or np.isfinite(shape.exponential_mean(end - 1e-9))
 
 
+@pytest.mark.parametrize("value", [-2.5, -1.3, -0.4, 0.0, 0.9, 2.2])
 @pytest.mark.parametrize("skewness", [-0.994, -0.5, 0.3, 0.9, 0.994])
-def test_shares_of_a_skew_normal_are_integrals_of_its_density(skewness):
-    """Azzalini (1985), the density 2 phi(x) Phi(slant x), by scipy.integrate.quad; shares are rounded at 1e-16."""
-    shape, slant = SHAPES.make("skew_normal", {"skewness": skewness}), skew_normal(skewness).args[0]
-    centre, scale = shape.centre_and_scale()
-    for value in (-2.5, -1.3, -0.4, 0.0, 0.9, 2.2):
-        edges = np.unique(np.clip([-40, -6, -3, -1, -0.1, 0, 0.1, 1, 3, 40], -40, centre + scale * value))
-        wanted = sum(
-            integrate.quad(
-                lambda x: 2 * stats.norm.pdf(x) * stats.norm.cdf(slant * x),
-                *panel,
-                epsabs=1e-15,
-                epsrel=1e-12,
-            )[0]
-            for panel in zip(edges[:-1], edges[1:], strict=True)
-        )
-        assert shape.cumulative(value) == pytest.approx(wanted, rel=0, abs=1e-11)
+def test_shares_of_a_skew_normal_are_integrals_of_its_density(skewness, value):
+    """Azzalini (1985), the density 2 phi(x) Phi(slant x), by scipy.integrate.quad 1.17, to 1e-13."""
+    shape, reference = SHAPES.make("skew_normal", {"skewness": skewness}), skew_normal(skewness)
+    end = reference.mean() + reference.std() * value
+    edges = np.unique(np.clip([-40, -6, -3, -1, -0.1, 0, 0.1, 1, 3, 40], -40, end))
+
+    def density(x):
+        return 2 * stats.norm.pdf(x) * stats.norm.cdf(reference.args[0] * x)
+
+    wanted = sum(integrate.quad(density, *panel, epsabs=1e-15, epsrel=1e-13)[0] for panel in pairwise(edges))
+    assert shape.cumulative(value) == pytest.approx(wanted, rel=0, abs=1e-13)
 
 
 def test_a_skew_normal_of_strong_slant_has_exponential_means_at_high_rates():
-    """Azzalini (1985), 2 exp(t^2 / 2) Phi(delta t), in logarithms: a factor beyond doubles meets a tiny one."""
+    """Azzalini (1985), 2 exp(t^2 / 2) Phi(delta t), as logarithms: a huge factor meets a tiny one."""
     shape = SHAPES.make("skew_normal", {"skewness": -0.9})
     centre, scale = shape.centre_and_scale()
     t = 40 / scale
@@ -243,7 +239,7 @@ def test_a_skew_normal_of_strong_slant_has_exponential_means_at_high_rates():
 
 @pytest.mark.parametrize("sigma", [1e-100, 1e-12, 1e-8])
 def test_a_lognormal_of_tiny_sigma_is_normal_to_first_order(sigma):
-    """(exp(sigma z) - mean) / sd = z + sigma (z^2 - 1) / 2 + ..., skewness 3 sigma, excess kurtosis 16 sigma^2."""
+    """(exp(sigma z) - mean) / sd = z + sigma (z^2 - 1) / 2; skewness 3 sigma, excess kurtosis 16 sigma^2."""
     shape, z = SHAPES.make("lognormal", {"sigma": sigma}), stats.norm.ppf(SHARES)
     np.testing.assert_allclose(shape.quantile(SHARES), z + sigma * (z**2 - 1) / 2, rtol=0, atol=1e-14)
     np.testing.assert_allclose(shape.cumulative(shape.quantile(SHARES)), SHARES, rtol=1e-12)
@@ -262,7 +258,7 @@ def weights_of_mixture(fraction, factor):
 @some(max_examples=40)
 @given(mixtures)
 def test_a_contaminated_normal_is_the_mixture_it_says(chosen):
-    """The definition: (1 - fraction) N(0, 1) + fraction N(0, factor^2), in units of its standard deviation."""
+    """The definition: (1 - fraction) N(0, 1) + fraction N(0, factor^2), in its own standard deviations."""
     shape = SHAPES.make("contaminated_normal", chosen)
     fraction, factor, sd = weights_of_mixture(**chosen)
 

@@ -72,6 +72,25 @@ def test_check_tells_conditions_truths_and_cost(folder, capsys):
     assert sorted(path.name for path in folder.iterdir()) == ["x.toml"]
 
 
+def test_what_rounding_makes_unequal_is_told(folder, capsys):
+    """A coarse grid off the common mean moves the means of narrow and wide groups apart."""
+    coarse = TEXT.replace(
+        "[methods]", '[vary.disturbance]\ncoarse = [{ kind = "round", to = 2 }]\n[methods]', 1
+    )
+    coarse = coarse.replace('compare = "means"', 'compare = "means"\ncentre = 0.6').replace(
+        "[3, 2, 1]", "[3, 2, 0.4]"
+    )
+    (folder / "y.toml").write_text(coarse, encoding="utf-8")
+    found = told(capsys, "check", "y.toml")[1]["conditions"]
+    assert [one["equal_as_recorded"] for one in found] == [True, True, False, True]
+    assert "means" not in found[2]["holds"] and found[2]["truth"] == "null"
+    assert cli.status_of(cli.workbench, ["check", "y.toml"]) == 0
+    assert (
+        "Not equal as recorded: the null holds, but not after the disturbances, in 3."
+        in capsys.readouterr().out
+    )
+
+
 def test_run_and_decide_tell_the_decision(folder, capsys):
     status, found = told(capsys, "run", "x.toml", "--workers", "1")
     assert status == 0

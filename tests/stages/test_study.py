@@ -183,6 +183,13 @@ def test_each_mistake_is_told_with_its_place(old, new, wanted):
     assert all(line.startswith("x.toml:") for line in told.split("\n"))
 
 
+def test_more_than_a_hundred_thousand_conditions_are_refused():
+    many = "".join(f"d{number} = [0, 0, {number}]\n" for number in range(25_001))
+    text = GOOD.replace("relevant = [0.0, 0.0, 3.0]\n", "relevant = [0.0, 0.0, 3.0]\n" + many)
+    with pytest.raises(StudyError, match="at most 100,000 conditions wanted; these levels give 100,012"):
+        parse(text, "x.toml")
+
+
 def test_all_mistakes_of_a_file_are_told_at_once():
     broken = GOOD
     for old, new in (

@@ -75,7 +75,9 @@ def status_of(command, args=None):
         click.echo(str(error), err=True)
         return error.status
     except (KeyboardInterrupt, click.Abort):
-        click.echo("\nInterrupted; what was finished is kept, and the same command goes on from there.", err=True)
+        click.echo(
+            "\nInterrupted; what was finished is kept, and the same command goes on from there.", err=True
+        )
         return 130
     except BrokenPipeError:
         # The reader of our output is gone, as with `| head`; keep the interpreter from complaining about it.

@@ -3,7 +3,7 @@
 import click
 from rich.text import Text
 
-from workbench import estimate
+from workbench import estimate, wording
 from workbench.cli import options, terminal
 from workbench.cores import default_workers
 from workbench.grid import (
@@ -16,7 +16,6 @@ from workbench.grid import (
 from workbench.numbers import duration, storage
 from workbench.plan import plan_of
 from workbench.study import read, with_overrides
-from workbench.wording import plural
 
 MOST_SHOWN = 200
 """Conditions listed on a terminal; --json lists all."""
@@ -40,11 +39,11 @@ def command(file, workers, replications, seed, as_json):
     plan = plan_of(study, found)
     cost = estimate.seconds(plan, workers or default_workers()), estimate.storage(plan)
     if as_json:
-        return options.print_json(as_data(found, cost))
+        return options.print_json(as_data(found, study.question.compare, cost))
     print_study(study, found, cost)
 
 
-def as_data(found, cost):
+def as_data(found, compare, cost):
     """The conditions and the cost as plain data."""
     told = [
         {"condition": condition.number}
@@ -52,6 +51,7 @@ def as_data(found, cost):
         | {
             "truth": condition.truth,
             "holds": holds_as_recorded(condition),
+            "equal_as_recorded": equal_as_recorded(condition, compare),
             "groups": recorded_quantities(condition),
         }
         for condition in found
@@ -68,7 +68,7 @@ def print_study(study, found, cost):
     console.print(
         Text(
             f"Are {question.compare} of {question.outcome or 'the outcome'}{unit} equal in "
-            f"{len(study.group_names)} groups ({', '.join(study.group_names)})? Scale {question.scale}, "
+            f"{len(study.group_names)} groups ({several(study.group_names, ', ')})? Scale {question.scale}, "
             f"centre {question.centre:g}, level {', '.join(f'{level:g}' for level in study.levels)}.\n"
         )
     )
@@ -91,7 +91,7 @@ def print_study(study, found, cost):
         console.print(Text(f"{criterion.name}{at}: {criterion.reading} rate from {low:g} to {high:g}"))
     console.print(
         Text(
-            f"{len(found):,} conditions, {study.simulation.replications:,} replications each: about "
+            f"{wording.conditions(len(found))}, {study.simulation.replications:,} replications each: about "
             f"{duration(cost[0])} and {storage(cost[1])} of disk. Plan {study.key}. Nothing was run."
         )
     )
@@ -122,7 +122,13 @@ def holding_shown(condition):
 def row(groups, quantity):
     """One quantity of all groups; once where it is the same in all."""
     shown = ["none" if group[quantity] is None else tidy(group[quantity]) for group in groups]
-    return shown[0] if len(set(shown)) == 1 else " ".join(shown)
+    return shown[0] if len(set(shown)) == 1 else several(shown, " ")
+
+
+def several(words, between):
+    """Words side by side; of more than a dozen the first and the last ones."""
+    words = list(words)
+    return between.join(words if len(words) <= 12 else [*words[:5], "…", *words[-5:]])
 
 
 def tidy(value):
@@ -137,6 +143,7 @@ def methods_table(study, found):
     for judge in study.judges:
         admitted = "no, but admitted" if judge.name in study.criteria.admit else "no"
         terminal.add(
-            made, [judge.name, plural(judge.method.hypothesis), "yes" if answers[judge.name] else admitted]
+            made,
+            [judge.name, wording.plural(judge.method.hypothesis), "yes" if answers[judge.name] else admitted],
         )
     return made

@@ -13,8 +13,8 @@ from workbench.shapes.shape import SHAPES, Asymmetric
 class Gamma(Asymmetric):
     """Gamma values of the given shape parameter, from 0.01 to a million.
 
-    At 0.01 two thirds of all values are already too close to the lower end to be told apart by double numbers;
-    at a million the shape differs from the normal by less than a run can tell.
+    At 0.01 two thirds of all values are already too close to the lower end to be told apart by double
+    numbers; at a million the shape differs from the normal by less than a run can tell.
     """
 
     name = "gamma"

@@ -64,8 +64,8 @@ class Lognormal(Asymmetric):
         # The right tail of a lognormal outgrows every exponential.
         if rate > 0:
             return np.inf
-        # Equal steps of the normal value are as precise as any rule for a function this smooth, and unlike shares
-        # they reach as far into the tail as a high rate needs.
+        # Equal steps of the normal value are as precise as any rule for a function this smooth, and unlike
+        # shares they reach as far into the tail as a high rate needs.
         normal = np.linspace(-50, 50, 5001)
         terms = np.exp(rate * self.of_normal(normal) - normal**2 / 2)
         return float(terms.sum() * (normal[1] - normal[0]) / np.sqrt(2 * np.pi))
