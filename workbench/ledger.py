@@ -14,6 +14,8 @@ from workbench.histogram import EDGES
 
 FORMAT = 1
 
+DAMAGED = "what is stored here is damaged or of another version; move the file away and run again"
+
 QUICK = 1
 """Level of compression; higher ones save a few bytes of a hundred and take twice the time."""
 
@@ -217,7 +219,13 @@ class Ledger:
         rows = self._db.execute(query + " ORDER BY chunk", [*place, *more, chunks]).fetchall()
         if len(rows) != chunks:
             raise KeyError(f"{chunks - len(rows)} chunks are missing")
-        return np.frombuffer(b"".join(plain(blob) for (blob,) in rows), dtype=np.uint8)
+        try:
+            parts = [plain(blob) for (blob,) in rows]
+        except (ValueError, IndexError, zlib.error):
+            raise WorkError(f"{self.path}: {DAMAGED}") from None
+        if len({len(part) for part in parts}) > 1:
+            raise WorkError(f"{self.path}: {DAMAGED}")
+        return np.frombuffer(b"".join(parts), dtype=np.uint8)
 
     def histogram(self, setting, difference, method, chunks):
         """(len(EDGES),) counts of p-values over the first chunks, whole."""
@@ -264,7 +272,12 @@ def packed_bits(bits):
 
 def plain_bits(blob):
     """The bits that packed_bits was given."""
-    return bytes(int.from_bytes(blob[1:], "big")) if blob[0] else blob[1:]
+    form, content = blob[0], blob[1:]
+    if form == 0:
+        return content
+    if form == 1 and len(content) == 4:
+        return bytes(int.from_bytes(content, "big"))
+    raise ValueError("bits of no known form")
 
 
 def packed_counts(counts):

@@ -168,6 +168,15 @@ def test_a_ledger_that_contradicts_itself_is_refused(tmp_path):
         run.run(parse(TEXT, "x.toml"), tmp_path, 1)
 
 
+@pytest.mark.parametrize("blob", ["x'0905'", "x''", "zeroblob(9)"])
+def test_damaged_work_is_told_with_a_sentence(blob, tmp_path, capsys):
+    run.run(parse(TEXT, "x.toml"), tmp_path, 1)
+    with sqlite3.connect(tmp_path / run.LEDGER) as db:
+        db.execute(f"UPDATE rejection SET bits = {blob} WHERE chunk = 1")
+    assert cli.status_of(cli.workbench, ["decide", str(tmp_path)]) == 1
+    assert "damaged or of another version" in capsys.readouterr().err
+
+
 def test_a_file_that_is_no_ledger_is_refused_with_a_sentence(tmp_path, capsys):
     (tmp_path / run.LEDGER).write_bytes(b"this is no database, it only has the name of one" * 100)
     (tmp_path / "x.toml").write_text(TEXT, encoding="utf-8")
