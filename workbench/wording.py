@@ -7,8 +7,8 @@ def exclusion(study, standing):
     """Why a method is not eligible, as one sentence."""
     if not standing.counted_in:
         return (
-            f"tests {plural(standing.hypothesis)}, which differ where {study.question.compare} are equal; "
-            "it answers another question than the one asked, and criteria.admit does not let it in"
+            f"tests {plural(standing.hypothesis)}, which do not hold wherever {study.question.compare} are equal: it "
+            "answers another question than the one asked, and criteria.admit does not let it in"
         )
     if standing.size is None:
         return "no condition has the null hypothesis true, so its error rate was not judged"
@@ -128,6 +128,11 @@ def reasons(study, one):
         f"{percent(one.errors['rate'].min(), row['mcse'])} and {percent(one.errors['rate'].max(), row['mcse'])} of "
         f"studies, within the limits {low:g} to {high:g}; farthest at {place(study, row)}."
     ]
+    if not one.answers:
+        found.append(
+            f"It tests {plural(one.hypothesis)}, not {study.question.compare}: the file admits it although it answers "
+            "another question than the one asked."
+        )
     if one.least is not None and study.criteria.power is not None:
         found.append(
             f"It finds the difference {study.criteria.power.at} in at least {rate_with_limits(one.least)}, "

@@ -29,6 +29,7 @@ def rows(rates, half, verdict="", reading="detection"):
             "replications": 10_000,
             "rejections": (rates * 10_000).astype(int),
             "undefined": 0,
+            "method": "a",
         }
     )
 
@@ -196,3 +197,58 @@ def test_a_rate_at_its_limit_is_hardly_settled():
 def test_sentences_open_as_they_must():
     assert wording.settling(advice(690, 10_000, 0.075, 0.065, 0.08, 1e-3), 10_000).startswith("About ")
     assert "hardly settle" in wording.settling(advice(750, 10_000, 0.075, 0.07, 0.08, 1e-4), 10_000)
+
+
+def study_of(**criteria):
+    """What the sentences ask of a study: level, limits, target, factors."""
+    return SimpleNamespace(
+        levels=(0.05,),
+        question=SimpleNamespace(compare="means"),
+        criteria=SimpleNamespace(size=CRITERIA.make("size", {"word": "liberal"}), tie=0.01, **criteria),
+        factors=SimpleNamespace(levels={"sizes": {"a": 1, "b": 2}, "difference": {"none": 0, "real": 1}}),
+        simulation=SimpleNamespace(replications=10_000),
+    )
+
+
+def told(status, chosen, standings, open_rows=(), **criteria):
+    """The sentences of a decision, joined."""
+    for one in standings:
+        one.errors["sizes"] = one.detections["sizes"] = "a"
+    study = study_of(**({"power": SimpleNamespace(at="real", least=0.8)} | criteria))
+    return " ".join(wording.decision(study, status, chosen, standings, list(open_rows)))
+
+
+def test_a_choice_is_told_with_its_reasons():
+    a, b = standing("a", [0.9]), standing("b", [0.7])
+    text = told("chosen", [a], [a, b])
+    assert text.startswith("Use the a.") and "at least 90" in text and "b 70" in text
+    assert "larger sizes" not in text and "another question" not in text
+    admitted = standing("a", [0.9], answers=False, admitted=True)
+    assert "the file admits it although it answers another question" in told("chosen", [admitted], [admitted])
+
+
+def test_a_power_that_falls_short_asks_for_sizes():
+    short = Standing("a", "a", "means", True, False, Verdict.MEETS, Verdict.FAILS, *standing_rows([0.6]))
+    assert "larger sizes are needed, not another test" in told("chosen", [short], [short])
+    open_power = Standing(
+        "a", "a", "means", True, False, Verdict.MEETS, Verdict.UNDECIDED, *standing_rows([0.8])
+    )
+    assert "is not shown yet" in told("chosen", [open_power], [open_power])
+
+
+def standing_rows(detections):
+    """The rows of a method with the given detections."""
+    return rows([0.05], 0.004, "meets", "error"), rows(detections, 0.005)
+
+
+def test_the_other_openings_say_what_to_do():
+    a, b = standing("a", [0.9]), standing("b", [0.9])
+    assert told("tie", [a, b], [a, b]).startswith("The a and b tie.")
+    fails = standing("c", [0.9], size=Verdict.FAILS)
+    assert told("none eligible", [], [fails]).startswith("No method is eligible. The nearest is the c")
+    other = standing("c", [0.9], answers=False)
+    assert "see criteria.admit" in told("none eligible", [], [other])
+    assert "neither apart nor" in told("undecided", [], [a, b])
+    row = a.errors.iloc[0]
+    hard = (row, 0.075, advice(750, 10_000, 0.075, 0.07, 0.08, 1e-4))
+    assert "hardly settle" in told("undecided", [], [a], [hard])

@@ -57,7 +57,7 @@ def methods_table(study, standings, narrow):
         headings.append(("undefined", "right"))
     made = terminal.table(headings)
     for one in standings:
-        name = one.name if one.counted_in else f"{one.name}\n  other question"
+        name = one.name if one.answers else f"{one.name}\n  other question"
         error = None if one.errors.empty else wording.farthest(study, one.errors)
         size = "" if one.size is None else one.size.value
         cells = [name, *described(study, error, narrow), size, *described(study, one.least, narrow)]
