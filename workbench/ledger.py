@@ -246,7 +246,13 @@ def connect(path, address):
 
 
 def unusable(path, error):
-    """The error a user sees where SQLite cannot go on."""
+    """The error a user sees where SQLite cannot go on: the file is no ledger, or the system fails it."""
+    if isinstance(error, sqlite3.OperationalError) and not str(error).startswith(
+        ("no such", "unable to open")
+    ):
+        return WorkError(
+            f"{path}: the ledger could not be read or written ({error}); what was finished is kept"
+        )
     return WorkbenchError(
         f"{path}: this file cannot be used as a ledger ({error}); move it away or use --out"
     )

@@ -1,5 +1,6 @@
 """What goes into the ledger comes out of it, in little space."""
 
+import sqlite3
 import zlib
 
 import numpy as np
@@ -8,7 +9,7 @@ from hypothesis import given
 from hypothesis import strategies as some
 
 from workbench import ledger
-from workbench.errors import WorkbenchError
+from workbench.errors import WorkbenchError, WorkError
 from workbench.histogram import EDGES, counts
 from workbench.records import Tally
 
@@ -69,6 +70,30 @@ def test_work_of_other_versions_is_not_added_to(tmp_path):
         ledger.Ledger.writing(tmp_path / "l", {"numpy": "2"}),
     ):
         pass
+
+
+def test_a_database_of_another_kind_is_no_ledger(tmp_path):
+    with sqlite3.connect(tmp_path / "l") as db:
+        db.execute("CREATE TABLE other (x)")
+    with (
+        pytest.raises(WorkbenchError, match="cannot be used as a ledger") as caught,
+        ledger.Ledger.reading(tmp_path / "l") as store,
+    ):
+        store.header()
+    assert caught.value.status == 2
+
+
+def test_a_full_disk_is_a_failure_of_the_work(tmp_path):
+    rng = np.random.default_rng(4)
+    rows = [ledger.packed(tally(chunk, rng)) for chunk in range(200)]
+    with pytest.raises(WorkError, match="could not be read or written") as caught:
+        with ledger.Ledger.writing(tmp_path / "l", {"format": 1}) as store:
+            store.put(rows[:1])
+            store._db.execute("PRAGMA max_page_count = 12")
+            store.put(rows)
+    assert caught.value.status == 1
+    with ledger.Ledger.reading(tmp_path / "l") as store:
+        assert store.chunks("s", "d", "m", 0.05) == {0}, "a transaction is there whole or not at all"
 
 
 def test_histogram_edges_belong_to_the_format():

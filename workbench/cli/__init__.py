@@ -59,6 +59,10 @@ def main():
     # More threads inside one process would compete with the workers.
     for name in ("OPENBLAS_NUM_THREADS", "MKL_NUM_THREADS", "OMP_NUM_THREADS"):
         os.environ.setdefault(name, "1")
+    for stream in (sys.stdout, sys.stderr):
+        if hasattr(stream, "reconfigure"):
+            # A terminal that knows few letters shows a question mark rather than nothing at all.
+            stream.reconfigure(errors="replace")
     sys.exit(status_of(workbench))
 
 
