@@ -2,6 +2,7 @@
 
 import sqlite3
 import zlib
+from contextlib import closing
 
 import numpy as np
 import pytest
@@ -73,7 +74,7 @@ def test_work_of_other_versions_is_not_added_to(tmp_path):
 
 
 def test_a_database_of_another_kind_is_no_ledger(tmp_path):
-    with sqlite3.connect(tmp_path / "l") as db:
+    with closing(sqlite3.connect(tmp_path / "l", isolation_level=None)) as db:
         db.execute("CREATE TABLE other (x)")
     with (
         pytest.raises(WorkbenchError, match="cannot be used as a ledger") as caught,

@@ -7,6 +7,7 @@ import sqlite3
 import subprocess
 import sys
 import time
+from contextlib import closing
 
 import numpy as np
 import pytest
@@ -161,7 +162,7 @@ def test_overrides_go_into_the_experiment_that_is_kept(tmp_path):
 
 def test_a_ledger_that_contradicts_itself_is_refused(tmp_path):
     run.run(parse(TEXT, "x.toml"), tmp_path, 1)
-    with sqlite3.connect(tmp_path / run.LEDGER) as db:
+    with closing(sqlite3.connect(tmp_path / run.LEDGER, isolation_level=None)) as db:
         db.execute("DELETE FROM rejection WHERE level = 0.01")
         db.execute("UPDATE rejection SET bits = zeroblob(251) WHERE chunk = 0")
     with pytest.raises(WorkError, match="came out different"):
@@ -171,7 +172,7 @@ def test_a_ledger_that_contradicts_itself_is_refused(tmp_path):
 @pytest.mark.parametrize("blob", ["x'0905'", "x''", "zeroblob(9)"])
 def test_damaged_work_is_told_with_a_sentence(blob, tmp_path, capsys):
     run.run(parse(TEXT, "x.toml"), tmp_path, 1)
-    with sqlite3.connect(tmp_path / run.LEDGER) as db:
+    with closing(sqlite3.connect(tmp_path / run.LEDGER, isolation_level=None)) as db:
         db.execute(f"UPDATE rejection SET bits = {blob} WHERE chunk = 1")
     assert cli.status_of(cli.workbench, ["decide", str(tmp_path)]) == 1
     assert "damaged or of another version" in capsys.readouterr().err
