@@ -1,5 +1,6 @@
 """The command line: one file a command, loaded when it is called."""
 
+import gc
 import os
 import sys
 from importlib import import_module
@@ -28,7 +29,11 @@ class Commands(click.Group):
     def get_command(self, context, name):
         if name not in COMMANDS:
             return None
-        return import_module(f"workbench.cli.{name}").command
+        # Nothing that is loaded here will ever be given back, so looking for it only takes time.
+        gc.disable()
+        command = import_module(f"workbench.cli.{name}").command
+        gc.enable()
+        return command
 
     def resolve_command(self, context, args):
         if args and args[0] not in COMMANDS and not args[0].startswith("-"):
