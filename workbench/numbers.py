@@ -41,13 +41,6 @@ def percent(rate, standard_error):
     return f"{shown}{NO_BREAK}%"
 
 
-def points(difference, standard_error):
-    """A difference of two rates in percentage points."""
-    digits = max(0, decimals(standard_error) - 2)
-    shown = f"{100 * difference:.{digits}f}".replace("-", "−")
-    return f"{shown} percentage points"
-
-
 def duration(seconds):
     """A time as people say it: 40 s, 3 min, 2.5 h."""
     if seconds < 0.95:

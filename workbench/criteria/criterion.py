@@ -16,15 +16,6 @@ class Verdict(Enum):
     FAILS = "fails"
     UNDECIDED = "undecided"
 
-    @property
-    def sentence(self):
-        """What the verdict says to a reader."""
-        return {
-            Verdict.MEETS: "Meets the criterion: the whole interval lies inside the limits.",
-            Verdict.FAILS: "Fails the criterion: the whole interval lies outside the limits.",
-            Verdict.UNDECIDED: "Undecided: the interval reaches across a limit; run more replications.",
-        }[self]
-
 
 class Criterion(Part, ABC):
     """Limits between which a rate must lie."""
