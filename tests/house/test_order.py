@@ -4,6 +4,7 @@ import ast
 import importlib
 import re
 import subprocess
+import sys
 from pathlib import Path
 
 import pytest
@@ -127,7 +128,7 @@ def test_importing_the_package_loads_nothing_heavy():
     code = (
         "import sys, workbench; print([name for name in ('numpy', 'scipy', 'pandas') if name in sys.modules])"
     )
-    found = subprocess.run(["python", "-c", code], capture_output=True, text=True, check=True).stdout
+    found = subprocess.run([sys.executable, "-c", code], capture_output=True, text=True, check=True).stdout
     assert found.strip() == "[]"
 
 
