@@ -10,7 +10,7 @@ from workbench import wording
 from workbench.criteria import Verdict
 from workbench.grid import answering
 from workbench.table import judging, portion
-from workbench.verdict import advice, together
+from workbench.verdict import advice, settling_total, together
 
 
 class Status(Enum):
@@ -86,9 +86,9 @@ def decided(study, conditions, tables):
     standings = [standing(study, judge, answers[judge.name], tables.rates) for judge in study.judges]
     excluded = {one.name: wording.exclusion(study, one) for one in standings if not one.possible}
     status, chosen = choice(study, standings, tables)
-    sentences = wording.decision(
-        study, status.value, chosen, standings, advised(study, conditions, standings, tables)
-    )
+    open_rows = advised(study, conditions, standings, tables)
+    rivalry = contests(study, standings, tables)
+    sentences = wording.decision(study, status.value, chosen, standings, open_rows, rivalry)
     return Decision(
         status,
         [one.name for one in chosen],
@@ -143,19 +143,54 @@ def settle(leaders):
 
 def best(study, eligible, possible, tables):
     """The eligible method of the largest worst-case detection, with those that tie with it."""
-    lead = max(eligible, key=lambda one: one.detections["rate"].min())
-    tied = [lead]
+    lead, tied = leader(eligible), []
     for rival in possible:
         if rival is lead:
             continue
         low, high = worst_case_difference(lead, rival, tables.differences)
-        if -study.criteria.tie <= low and high <= study.criteria.tie:
-            if not rival.eligible:
-                return Status.UNDECIDED, []
+        if within_margin(study, low, high) and rival.eligible:
             tied.append(rival)
-        elif not low > 0:
+        elif within_margin(study, low, high) or not low > 0:
             return Status.UNDECIDED, []
-    return settle([one for one in eligible if one in tied])
+    return settle([one for one in eligible if one is lead or one in tied])
+
+
+def leader(eligible):
+    """The eligible method of the largest least detection."""
+    return max(eligible, key=lambda one: one.detections["rate"].min())
+
+
+def within_margin(study, low, high):
+    """Whether a difference known to lie from low to high counts as none."""
+    return -study.criteria.tie <= low and high <= study.criteria.tie
+
+
+@dataclass(frozen=True)
+class Contest:
+    """Two methods that are neither apart nor tied."""
+
+    lead: str
+    rival: str
+    low: float
+    high: float
+    total: int | None
+    """Replications in all that would probably settle it; None where more will hardly do."""
+
+
+def contests(study, standings, tables):
+    """The Contests between the leading method and others that keep their error rate, the hardest first."""
+    eligible = [one for one in standings if one.eligible]
+    if not eligible or study.criteria.power is None or eligible[0].detections.empty:
+        return []
+    lead, found = leader(eligible), []
+    for rival in eligible:
+        low, high = (
+            worst_case_difference(lead, rival, tables.differences) if rival is not lead else (1.0, 1.0)
+        )
+        if not (low > 0 or within_margin(study, low, high)):
+            total = settling_total((low, high), study.criteria.tie, study.simulation.replications)
+            found.append(Contest(lead.label, rival.label, low, high, total))
+    return sorted(found, key=lambda one: np.inf if one.total is None else one.total, reverse=True)
 
 
 def worst_case_difference(one, other, differences):

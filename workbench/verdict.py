@@ -58,3 +58,16 @@ def chance(more, q, replications, limit, error):
     if moved == 0:
         return float(distance > half_width)
     return float(ndtr((distance - half_width) / moved) + ndtr((-distance - half_width) / moved))
+
+
+def settling_total(limits, margin, replications):
+    """Replications in all after which a difference with these limits is probably above 0 or within the margin.
+
+    Limits close in on their middle with the root of the replications. None where even many more would hardly do.
+    """
+    middle, half = (limits[0] + limits[1]) / 2, (limits[1] - limits[0]) / 2
+    rooms = [room for room in (middle, margin - abs(middle)) if room > 0]
+    if not rooms:
+        return None
+    total = int(np.ceil(replications * (half / max(rooms)) ** 2))
+    return total if total <= max(HARDLY * replications, AFFORDABLE) else None

@@ -24,18 +24,15 @@ def plural(hypothesis):
     return "different things at its ends" if hypothesis == "mixed" else f"equal {hypothesis}"
 
 
-def decision(study, status, chosen, standings, open_rows):
+def decision(study, status, chosen, standings, open_rows, rivalry):
     """The sentences of a decision: what, why, what would change it."""
-    told = {
-        "chosen": chosen_sentences,
-        "tie": tie_sentences,
-        "none eligible": none_sentences,
-        "undecided": undecided_sentences,
-    }
-    return told[status](study, chosen, standings, open_rows)
+    if status == "undecided":
+        return undecided_sentences(study, standings, open_rows, rivalry)
+    told = {"chosen": chosen_sentences, "tie": tie_sentences, "none eligible": none_sentences}
+    return told[status](study, chosen, standings)
 
 
-def chosen_sentences(study, chosen, standings, open_rows):
+def chosen_sentences(study, chosen, standings):
     """Sentences for one chosen method."""
     one = chosen[0]
     return [
@@ -46,7 +43,7 @@ def chosen_sentences(study, chosen, standings, open_rows):
     ]
 
 
-def tie_sentences(study, chosen, standings, open_rows):
+def tie_sentences(study, chosen, standings):
     """Sentences for methods that cannot be told apart by the criteria."""
     sentences = [f"The {listed([one.label for one in chosen])} tie."]
     if study.criteria.power is None:
@@ -62,7 +59,7 @@ def tie_sentences(study, chosen, standings, open_rows):
     return [*sentences, *power_shortfall(study, chosen)]
 
 
-def none_sentences(study, chosen, standings, open_rows):
+def none_sentences(study, chosen, standings):
     """Sentences where every method is shown to break its error rate, or answers another question."""
     sentences = ["No method is eligible."]
     judged = [one for one in standings if one.counted_in and not one.errors.empty]
@@ -80,29 +77,45 @@ def none_sentences(study, chosen, standings, open_rows):
     return sentences
 
 
-def undecided_sentences(study, chosen, standings, open_rows):
+def undecided_sentences(study, standings, open_rows, rivalry):
     """Sentences where the intervals leave the choice open, with what would settle it."""
     sentences = ["Undecided."]
     if any(one.counted_in and one.size is None for one in standings):
-        return [
-            *sentences,
-            "No condition has the null hypothesis true, so no error rate was judged; add a difference of none.",
-        ]
-    if not open_rows:
         sentences.append(
-            "The leading methods are neither apart nor shown to differ by less than the margin of a tie."
-        )
-        sentences.append(
-            f"Run more than {study.simulation.replications:,} replications, or widen criteria.tie beforehand."
+            "No condition has the null hypothesis true, so no error rate was judged; add a difference of none."
         )
         return sentences
-    row, limit, hardest = open_rows[0]
-    name = next(one.label for one in standings if one.name == row["method"])
-    sentences.append(
-        f"{len(open_rows)} {'rows are' if len(open_rows) > 1 else 'row is'} open; the hardest is the {name} at "
-        f"{place(study, row)}: {rate_with_limits(row)} against the limit of {limit:g}."
-    )
-    return [*sentences, settling(hardest, row["replications"])]
+    if open_rows:
+        row, limit, hardest = open_rows[0]
+        name = next(one.label for one in standings if one.name == row["method"])
+        sentences.append(
+            f"{len(open_rows)} {'rows are' if len(open_rows) > 1 else 'row is'} open; the hardest is the {name} at "
+            f"{place(study, row)}: {rate_with_limits(row)} against the limit of {limit:g}."
+        )
+        sentences.append(settling(hardest, row["replications"]))
+    if rivalry:
+        sentences += contest(study, rivalry[0])
+    return sentences
+
+
+def contest(study, hardest):
+    """Sentences on two methods that are neither apart nor tied."""
+    ends = f"{100 * hardest.low:.1f} to {100 * hardest.high:.1f}".replace("-", "−")
+    sentences = [
+        f"The {hardest.lead} and the {hardest.rival} are neither apart nor tied: the difference of their least "
+        f"detections lies between {ends} percentage points, against a margin of {study.criteria.tie:g}."
+    ]
+    if hardest.total is None:
+        return [
+            *sentences,
+            "More replications will hardly settle it; a wider criteria.tie fixed beforehand would.",
+        ]
+    return [*sentences, f"About {thousands(hardest.total)} replications in all would probably settle it."]
+
+
+def thousands(number):
+    """A number rounded up to thousands, as people read it."""
+    return f"{-(-number // 1000) * 1000:,}"
 
 
 def settling(advice, done):
@@ -112,10 +125,9 @@ def settling(advice, done):
             f"The rate lies within {advice.within:.4f} of the limit; more replications will hardly settle it. "
             "Change the sizes or the candidates instead."
         )
-    total = -(-(done + advice.more) // 1000) * 1000
     return (
-        f"About {total:,} replications in all would probably settle it (chance 0.8). They extend the work that is "
-        "there, but looking again after an open result makes the stated confidence too high."
+        f"About {thousands(done + advice.more)} replications in all would probably settle it (chance 0.8). They "
+        "extend the work that is there, but looking again after an open result makes the stated confidence too high."
     )
 
 

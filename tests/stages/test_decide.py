@@ -8,9 +8,9 @@ import pytest
 
 from workbench import wording
 from workbench.criteria import CRITERIA, Verdict
-from workbench.decide import Standing, Status, best, choice, worst_case_difference
+from workbench.decide import Standing, Status, best, choice, contests, worst_case_difference
 from workbench.table import DIFFERENCE_COLUMNS, portion
-from workbench.verdict import advice, chance, together
+from workbench.verdict import advice, chance, settling_total, together
 
 
 def rows(rates, half, verdict="", reading="detection"):
@@ -210,12 +210,12 @@ def study_of(**criteria):
     )
 
 
-def told(status, chosen, standings, open_rows=(), **criteria):
+def told(status, chosen, standings, open_rows=(), rivalry=(), **criteria):
     """The sentences of a decision, joined."""
     for one in standings:
         one.errors["sizes"] = one.detections["sizes"] = "a"
     study = study_of(**({"power": SimpleNamespace(at="real", least=0.8)} | criteria))
-    return " ".join(wording.decision(study, status, chosen, standings, list(open_rows)))
+    return " ".join(wording.decision(study, status, chosen, standings, list(open_rows), list(rivalry)))
 
 
 def test_a_choice_is_told_with_its_reasons():
@@ -248,7 +248,19 @@ def test_the_other_openings_say_what_to_do():
     assert told("none eligible", [], [fails]).startswith("No method is eligible. The nearest is the c")
     other = standing("c", [0.9], answers=False)
     assert "see criteria.admit" in told("none eligible", [], [other])
-    assert "neither apart nor" in told("undecided", [], [a, b])
+    rivalry = contests(study_of(power=object()), [a, b], tables_of([a, b], 0.02))
+    assert len(rivalry) == 1 and rivalry[0].total > 10_000
+    assert "neither apart nor tied: the difference" in told("undecided", [], [a, b], rivalry=rivalry)
     row = a.errors.iloc[0]
     hard = (row, 0.075, advice(750, 10_000, 0.075, 0.07, 0.08, 1e-4))
     assert "hardly settle" in told("undecided", [], [a], [hard])
+
+
+@pytest.mark.parametrize(
+    ("limits", "wanted"),
+    [((-0.01, 0.03), 40_000), ((-0.02, 0.02), 40_000), ((-0.01, 0.03001), 39_920), ((-0.2, 0.18), None)],
+)
+def test_how_many_replications_tell_two_methods_apart(limits, wanted):
+    """Limits of half-width h about d need n (h / d)^2 replications to leave 0, or n (h / (m - d))^2 to tie."""
+    found = settling_total(limits, 0.01, 10_000)
+    assert found == wanted or abs(found - wanted) < 200
