@@ -1,7 +1,7 @@
 """Upper tails of F and chi-square, and the F ratio of analysis of variance, shared by the tests built on them."""
 
 import numpy as np
-from scipy.special import chdtrc, fdtrc
+from scipy.special import chdtrc, erfc, fdtrc
 
 MOST_TERMS = 12
 """The closed form for even numerator degrees of freedom is used up to so many terms."""
@@ -33,18 +33,19 @@ def f_distribution_tail(numerator, denominator, f):
 def chi_square_tail(df, x):
     """(R,) upper tail areas of chi-square with whole degrees of freedom.
 
-    For an even number 2 m it is exp(-x / 2) times the sum over j < m of (x / 2)^j / j! (Johnson, Kotz &
-    Balakrishnan 1994, Continuous Univariate Distributions 1, section 18.3).
+    With h = x / 2 the tail is exp(-h) times the sum over j < m of h^j / j! for an even number 2 m, and erfc(sqrt(h))
+    plus exp(-h) times the sum over j <= m of h^(j - 1/2) / Gamma(j + 1/2) for an odd one 2 m + 1 (Johnson, Kotz &
+    Balakrishnan 1994, Continuous Univariate Distributions 1, section 18.3): all terms are positive.
     """
-    terms = df // 2
-    if df % 2 or terms > MOST_TERMS:
+    terms, odd = divmod(df, 2)
+    if terms > MOST_TERMS:
         return chdtrc(df, x)
     half = 0.5 * x
-    tail = np.exp(-half)
-    term = tail
-    for j in range(1, terms):
-        term = term * half / j
+    term = np.exp(-half) * (2 * np.sqrt(half / np.pi) if odd else 1.0)
+    tail = erfc(np.sqrt(half)) if odd else 0.0
+    for j in range(terms):
         tail = tail + term
+        term = term * half / (j + 1.5 if odd else j + 1)
     return tail
 
 
