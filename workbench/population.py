@@ -86,7 +86,8 @@ class Multiplicative(Continuous):
     spread: float
 
     def quantile(self, share):
-        return self.location * np.exp(self.spread * self.shape.quantile(share))
+        with np.errstate(over="ignore"):  # far in a heavy tail a value may be too large for a double
+            return self.location * np.exp(self.spread * self.shape.quantile(share))
 
     def cumulative(self, value):
         value = np.asarray(value, dtype=float)

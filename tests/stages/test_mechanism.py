@@ -9,7 +9,7 @@ from workbench.disturbances import DISTURBANCES
 from workbench.estimands import ESTIMANDS
 from workbench.grid import holding
 from workbench.methods import METHODS
-from workbench.population import Additive, superiority
+from workbench.population import Additive, Multiplicative, superiority
 from workbench.records import Setting, Task, Want
 from workbench.shapes import SHAPES
 from workbench.streams import Lane, stream
@@ -100,6 +100,13 @@ def test_what_is_equal_is_found_by_theory():
     assert holding(skewed, (5, 5)) == ["means"]
     same = [Additive(NORMAL, 5.0, 1.0)] * 2
     assert holding(same, (5, 5)) == ["means", "medians", "trimmed means", "distributions", "stochastic size"]
+
+
+def test_a_heavy_tail_is_described_without_a_warning():
+    """exp of Student's t has no mean; its far tail is too large for a double."""
+    heavy = Multiplicative(SHAPES.make("student_t", {"df": 5.0}), 1.0, 1.5)
+    assert heavy.quantities["mean"] is None and heavy.quantities["median"] == pytest.approx(1.0)
+    assert superiority(heavy, Multiplicative(heavy.shape, 1.0, 0.5)) == pytest.approx(0.5, abs=1e-9)
 
 
 def test_the_chance_to_be_larger_is_known_for_normal_populations():
