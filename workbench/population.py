@@ -11,6 +11,7 @@ from workbench.quadrature import over_shares, unit_interval
 QUANTITIES = ("mean", "median", "sd", "skewness", "excess_kurtosis", "trimmed_mean", "geometric_mean")
 
 TRIM = 0.2
+"""Share cut from each end by a trimmed mean."""
 
 
 class Population(ABC):

@@ -3,9 +3,8 @@
 import numpy as np
 
 from workbench.estimands.estimand import ESTIMANDS, Estimand
+from workbench.population import TRIM
 from workbench.quadrature import over_shares
-
-CUT = 0.2
 
 
 @ESTIMANDS.add
@@ -20,4 +19,6 @@ class TrimmedMeans(Estimand):
         return shape.trimmed_mean()
 
     def multiplicative(self, shape, spread):
-        return over_shares(lambda share: np.exp(spread * shape.quantile(share)), CUT, 1 - CUT) / (1 - 2 * CUT)
+        return over_shares(lambda share: np.exp(spread * shape.quantile(share)), TRIM, 1 - TRIM) / (
+            1 - 2 * TRIM
+        )

@@ -4,13 +4,11 @@ from abc import ABC, abstractmethod
 
 import numpy as np
 
+from workbench.population import TRIM
 from workbench.quadrature import over_shares
 from workbench.registry import Part, Shelf, record
 
 SHAPES = Shelf("shape")
-
-TRIM = 0.2
-"""Share cut from each end by a trimmed mean."""
 
 
 class Shape(Part, ABC):
