@@ -4,7 +4,7 @@ import numpy as np
 
 from workbench import mechanism
 from workbench.histogram import counts
-from workbench.records import Tally, difference_key
+from workbench.records import Tally, Task, Want, difference_key
 from workbench.routes.route import Route, parts_of
 from workbench.streams import Lane, stream
 
@@ -42,6 +42,16 @@ def judged_block(task, streams, replications):
         for method in want.methods:
             found[want.difference, method] = outcome(method, batch, rngs)
     return found
+
+
+def first_dataset(seed, setting, difference):
+    """(N,) values of the first dataset of a condition's stream, as recorded."""
+    want = Want(difference, ())
+    streams = Streams(Task(seed, setting, (), (0,), (want,)), 0)
+    with np.errstate(all="ignore"):
+        base = mechanism.draw(setting, streams.data, blocks(setting.total)[0])
+        batch = mechanism.recorded(setting, base, difference, streams.disturbances[difference])
+    return np.array(batch.columns[:, 0])
 
 
 def settle_allocator():

@@ -76,6 +76,11 @@ class Judge:
         return getattr(self.method, "label", f"rule {self.name}")
 
     @property
+    def short(self):
+        """What figures call it where space is short."""
+        return getattr(self.method, "short", self.name)
+
+    @property
     def hypotheses(self):
         """What the method tests: one hypothesis, or those of all ends of a route."""
         ends = getattr(self.method, "ends", None)

@@ -1,35 +1,19 @@
 """Run: a study from start to table."""
 
-import hashlib
 import json
 import os
-import platform
 from dataclasses import dataclass
-from importlib.metadata import version
 from pathlib import Path
 
 from workbench import pool
-from workbench.decide import Decision, decided
 from workbench.errors import WorkbenchError, WorkError
 from workbench.grid import conditions
 from workbench.ledger import FORMAT, Ledger
+from workbench.outcome import libraries, manifest, outcome_of
 from workbench.plan import plan_of, tally_count
-from workbench.study import Study, parse
-from workbench.table import Tables, tabulated
-from workbench.theory.exact import Agreement, agreement
+from workbench.study import parse
 
 LEDGER = "ledger.sqlite"
-
-
-@dataclass(frozen=True)
-class Outcome:
-    """What a result directory comes to."""
-
-    study: Study
-    directory: Path
-    tables: Tables
-    decision: Decision
-    agreement: Agreement
 
 
 @dataclass(frozen=True)
@@ -79,11 +63,6 @@ def header(study):
     return {"format": FORMAT, "seed": study.simulation.seed} | libraries()
 
 
-def libraries():
-    """Versions of the libraries that results depend on."""
-    return {name: version(name) for name in ("numpy", "scipy")}
-
-
 def simulate(plan, ledger, workers, watch):
     """Do the work that a ledger lacks, storing every bundle as it arrives."""
     tasks = plan.tasks(ledger)
@@ -97,12 +76,6 @@ def simulate(plan, ledger, workers, watch):
             watch(Progress(done, plan.tallies))
     finally:
         rows_arriving.close()
-
-
-def outcome_of(study, found, directory, ledger):
-    """The Outcome of a finished ledger."""
-    tables = tabulated(study, found, ledger)
-    return Outcome(study, Path(directory), tables, decided(study, found, tables), agreement(tables.rates))
 
 
 def stored_study(directory):
@@ -148,10 +121,15 @@ class UnfinishedError(WorkbenchError):
 def write(outcome):
     """Write the tables, the manifest and the experiment of an Outcome, each file whole or not at all."""
     tables, directory = outcome.tables, outcome.directory
-    write_text(directory / "table.csv", tables.rates.to_csv(index=False, lineterminator="\n"))
-    write_text(directory / "differences.csv", tables.differences.to_csv(index=False, lineterminator="\n"))
-    if len(tables.branches):
-        write_text(directory / "branches.csv", tables.branches.to_csv(index=False, lineterminator="\n"))
+    written = {
+        "table.csv": tables.rates,
+        "differences.csv": tables.differences,
+        "branches.csv": tables.branches,
+        "calibration.csv": outcome.calibration,
+    }
+    for name, table in written.items():
+        if len(table) or name in ("table.csv", "differences.csv"):
+            write_text(directory / name, table.to_csv(index=False, lineterminator="\n"))
     write_text(directory / "experiment.toml", outcome.study.text)
     write_text(
         directory / "manifest.json", json.dumps(manifest(outcome), indent=2, ensure_ascii=False) + "\n"
@@ -167,25 +145,3 @@ def write_text(path, text):
     except OSError as error:
         part.unlink(missing_ok=True)
         raise WorkError(f"{path}: cannot be written ({error.strerror})") from None
-
-
-def manifest(outcome):
-    """What ran: file, plan, seed, versions, platform, counts and their digest."""
-    study, rates = outcome.study, outcome.tables.rates
-    return {
-        "experiment": Path(study.file).name,
-        "experiment_sha256": hashlib.sha256(study.text.encode("utf-8")).hexdigest(),
-        "plan": study.key,
-        "seed": study.simulation.seed,
-        "replications": study.simulation.replications,
-        "conditions": int(rates["condition"].nunique()),
-        "methods": {judge.name: judge.method.key() for judge in study.judges},
-        "tallies": plan_of(study, conditions(study)).tallies,
-        "rejections": int(rates["rejections"].sum()),
-        "undefined": int(rates["undefined"].sum()),
-        "digest": outcome.tables.digest,
-        "status": outcome.decision.status.value,
-        "chosen": outcome.decision.chosen,
-        "versions": {"workbench": version("workbench"), "python": platform.python_version()} | libraries(),
-        "platform": {"system": platform.system(), "machine": platform.machine()},
-    }

@@ -304,11 +304,18 @@ def test_a_method_has_a_label_for_sentences(name):
     assert METHODS[name].label and METHODS[name].label == METHODS[name].label.strip()
 
 
+@pytest.mark.parametrize("name", METHODS.names())
+def test_a_method_has_a_short_name_for_figures(name):
+    assert 0 < len(METHODS[name].short) <= 12
+
+
 def test_no_two_parts_share_a_name_key_or_label():
     assert len({part.name for part in PARTS}) == len(PARTS)
     assert len({part.key() for part in PARTS}) == len(PARTS)
     labels = [METHODS[name].label for name in METHODS.names()]
     assert len(set(labels)) == len(labels)
+    short = [METHODS[name].short for name in METHODS.names()]
+    assert len(set(short)) == len(short)
 
 
 @every_name

@@ -9,11 +9,11 @@ HOUSE = Path(workbench.__file__).parent
 
 ROOMS = """
 errors keys cores records registry places streams quadrature population ranks moments groups tails significance
-histogram numbers
+histogram numbers look
 shapes disturbances estimands methods checks measures criteria routes
 reader sections factors judges study mechanism grid theory
 chunk plan ledger pool
-table verdict wording decide
+table calibration verdict wording decide outcome
 run estimate
 cli front
 """.split()

@@ -12,6 +12,7 @@ class BrownForsytheF(Method):
 
     name = "brown_forsythe_f"
     label = "Brown–Forsythe F*"
+    short = "B–F"
     hypothesis = "means"
     assumes = "normal groups; spreads may differ"
     undefined_when = "no value differs from another within its group"

@@ -10,6 +10,7 @@ class ClassicalF(Method):
 
     name = "classical_f"
     label = "classical F"
+    short = "F"
     hypothesis = "means"
     assumes = "normal groups of equal spread"
     undefined_when = "no value differs from another within its group"

@@ -12,6 +12,7 @@ class KruskalWallis(Method):
 
     name = "kruskal_wallis"
     label = "Kruskal–Wallis test"
+    short = "K–W"
     hypothesis = "distributions"
     assumes = "nothing but equal distributions under the null hypothesis; sizes large enough for chi-square"
     undefined_when = "all values are equal, or a group is empty"

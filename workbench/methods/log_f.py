@@ -13,6 +13,7 @@ class LogF(Method):
 
     name = "log_f"
     label = "F on logarithms"
+    short = "log F"
     hypothesis = "geometric means"
     assumes = "logarithms normal, of equal spread"
     undefined_when = "a value is 0 or less, or no value differs from another within its group"

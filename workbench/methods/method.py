@@ -14,5 +14,7 @@ class Method(SignificanceTest, ABC):
 
     label: ClassVar[str]
     """What sentences call the method: "use the …"."""
+    short: ClassVar[str]
+    """What figures call it where space is short: "Welch"."""
     hypothesis: ClassVar[str]
     """What the method tests, in the words of `compare`: means, distributions …"""

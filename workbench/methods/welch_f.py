@@ -10,6 +10,7 @@ class WelchF(Method):
 
     name = "welch_f"
     label = "Welch F"
+    short = "Welch"
     hypothesis = "means"
     assumes = "normal groups; spreads may differ"
     undefined_when = "all values of some group are equal, or a group has fewer than two"
