@@ -140,7 +140,7 @@ def recorded_quantities(condition):
 
 def equal_as_recorded(condition, compare):
     """Whether a null condition's compared quantities are still equal, or as good as equal, when recorded."""
-    return not condition.is_null or compare in holds_as_recorded(condition)
+    return not condition.is_null or bool({compare, "distributions"} & set(holds_as_recorded(condition)))
 
 
 def answering(study, found):

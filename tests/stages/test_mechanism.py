@@ -6,11 +6,12 @@ import pytest
 from workbench import mechanism
 from workbench.chunk import REPLICATIONS, blocks, judged
 from workbench.disturbances import DISTURBANCES
+from workbench.disturbances.round import Round, Rounded
 from workbench.estimands import ESTIMANDS
-from workbench.grid import holding
+from workbench.grid import equal_as_recorded, holding
 from workbench.methods import METHODS
 from workbench.population import Additive, Multiplicative, superiority
-from workbench.records import Setting, Task, Want
+from workbench.records import Condition, Setting, Task, Want
 from workbench.shapes import SHAPES
 from workbench.streams import Lane, stream
 
@@ -145,3 +146,24 @@ def test_blocks_make_up_a_chunk(total):
     found = blocks(total)
     assert sum(found) == REPLICATIONS and min(found) >= 1
     assert max(found) * total <= 2 * 131_072 or max(found) == 1
+
+
+@pytest.mark.parametrize("spread", [0.7, 0.9])
+def test_rounding_leaves_a_geometric_mean_where_zeros_are_as_good_as_impossible(spread):
+    """Lognormal values about 6 rounded to 0.1: a zero in 1e11 or in 2e7 values takes nothing away."""
+    population = Rounded(Multiplicative(NORMAL, 6.0, spread), 0.1)
+    assert population.quantities["geometric_mean"] == pytest.approx(6.0, abs=0.002)
+
+
+def test_rounding_to_zero_takes_the_geometric_mean_away():
+    for unit in (0.1, 1e-6):
+        population = Rounded(Multiplicative(NORMAL, unit, 0.9), unit)
+        assert population.quantities["geometric_mean"] is None
+
+
+def test_identical_groups_are_equal_as_recorded_even_without_the_quantity_compared():
+    shapes, spreads = (NORMAL,) * 2, (2.0, 2.0)
+    setting = Setting(
+        shapes, ESTIMANDS.make("geometric means"), "multiplicative", 0.1, (5, 5), spreads, (Round(to=1.0),)
+    )
+    assert equal_as_recorded(Condition(1, {}, setting, (1.0, 1.0), "null"), "geometric means")

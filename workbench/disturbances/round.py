@@ -14,6 +14,10 @@ MOST_CELLS = 20_000
 """Beyond so many multiples within the bulk of a population, rounding in the tails is left to Sheppard's rule."""
 
 
+NEGLIGIBLE = 1e-6
+"""Share of values that rounding may bring to 0 without taking the geometric mean away: one in a million."""
+
+
 @DISTURBANCES.add
 class Round(Disturbance):
     """Values are recorded to the nearest multiple of `to`."""
@@ -95,7 +99,8 @@ class Rounded(Population):
     def by_sheppard(self, before):
         """The quantities that rounding to a unit far below the spread changes: it adds to² / 12 to the variance."""
         sd = None if before["sd"] is None else float(np.sqrt(before["sd"] ** 2 + self.to**2 / 12))
-        return {"sd": sd, "median": float(self.quantile(0.5))}
+        found = {"sd": sd, "median": float(self.quantile(0.5))}
+        return found if self.above_zero else found | {"geometric_mean": None}
 
     def trimmed_mean(self):
         """Mean of the rounded values between the quantiles at 0.2 and 0.8."""
@@ -105,8 +110,14 @@ class Rounded(Population):
         return float((kept * values).sum() / (1 - 2 * TRIM))
 
     def geometric_mean(self):
-        """The geometric mean; None where a rounded value can be 0 or less."""
-        if not self.quantile(0.0) > 0:
+        """The geometric mean of the values above 0; None where others are not as good as impossible."""
+        if not self.above_zero:
             return None
         values, shares = self.cells
-        return float(np.exp((shares * np.log(values)).sum() / shares.sum()))
+        some = values > 0
+        return float(np.exp((shares[some] * np.log(values[some])).sum() / shares[some].sum()))
+
+    @property
+    def above_zero(self):
+        """Whether values of 0 or less are as good as impossible."""
+        return bool(self.cumulative(0.0) <= NEGLIGIBLE)
