@@ -6,10 +6,11 @@ from enum import Enum
 import numpy as np
 import pandas as pd
 
-from workbench import wording
+from workbench import sentences
 from workbench.criteria import Verdict
 from workbench.grid import answering
 from workbench.table import judging, portion
+from workbench.texts import bare
 from workbench.verdict import advice, settling_total, together
 
 
@@ -71,8 +72,14 @@ class Decision:
     excluded: dict
     plan: str
     digest: str
-    sentences: list
+    told: list
+    """The sentences with marks around users' texts, for documents that can isolate them."""
     standings: list = field(repr=False)
+
+    @property
+    def sentences(self):
+        """What was decided and why, as plain sentences."""
+        return [bare(sentence) for sentence in self.told]
 
     def as_data(self):
         """The decision as plain data."""
@@ -84,11 +91,11 @@ def decided(study, conditions, tables):
     """The Decision of a study from its tables."""
     answers = answering(study, conditions)
     standings = [standing(study, judge, answers[judge.name], tables.rates) for judge in study.judges]
-    excluded = {one.name: wording.exclusion(study, one) for one in standings if not one.possible}
+    excluded = {one.name: bare(sentences.exclusion(study, one)) for one in standings if not one.possible}
     status, chosen = choice(study, standings, tables)
     open_rows = advised(study, conditions, standings, tables)
     rivalry = contests(study, standings, tables)
-    sentences = wording.decision(study, status.value, chosen, standings, open_rows, rivalry)
+    told = sentences.decision(study, status.value, chosen, standings, open_rows, rivalry)
     return Decision(
         status,
         [one.name for one in chosen],
@@ -96,7 +103,7 @@ def decided(study, conditions, tables):
         excluded,
         study.key,
         tables.digest,
-        sentences,
+        told,
         standings,
     )
 

@@ -8,6 +8,7 @@ import pandas as pd
 from workbench import run as running
 from workbench import study as files
 from workbench.cores import default_workers
+from workbench.documents import write_report
 from workbench.errors import StudyError
 from workbench.grid import conditions, holds_as_recorded, recorded_quantities
 from workbench.population import QUANTITIES
@@ -95,6 +96,10 @@ class Result:
     def decision(self):
         """What was decided, and why, as data and as sentences."""
         return self.outcome.decision
+
+    def report(self, path="report.html"):
+        """Write the report, one HTML file that opens without a network; raises WorkError where it cannot be written."""
+        write_report(self.outcome, Path(path))
 
     def _repr_html_(self):
         sentences = "".join(f"<p>{escape(sentence)}</p>" for sentence in self.decision.sentences)

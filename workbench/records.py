@@ -7,6 +7,7 @@ from typing import NamedTuple
 import numpy as np
 
 from workbench.keys import content_key
+from workbench.texts import isolated
 
 
 @dataclass(frozen=True)
@@ -73,7 +74,7 @@ class Judge:
     @property
     def label(self):
         """What sentences call it: "use the …"."""
-        return getattr(self.method, "label", f"rule {self.name}")
+        return getattr(self.method, "label", f"rule {isolated(self.name)}")
 
     @property
     def short(self):

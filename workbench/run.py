@@ -137,10 +137,15 @@ def write(outcome):
 
 
 def write_text(path, text):
+    """Write a text file so that a reader finds the old one or the new one, never half of it."""
+    write_bytes(path, text.encode("utf-8"))
+
+
+def write_bytes(path, content):
     """Write a file so that a reader finds the old one or the new one, never half of it."""
     part = path.with_name(f".{path.name}.{os.getpid()}.part")
     try:
-        part.write_bytes(text.encode("utf-8"))
+        part.write_bytes(content)
         os.replace(part, path)
     except OSError as error:
         part.unlink(missing_ok=True)

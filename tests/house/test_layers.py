@@ -8,13 +8,14 @@ import workbench
 HOUSE = Path(workbench.__file__).parent
 
 ROOMS = """
-errors keys cores records registry places streams quadrature population ranks moments groups tails significance
-histogram numbers look
+errors keys cores texts records registry places streams quadrature population ranks moments groups tails significance
+histogram numbers look words
 shapes disturbances estimands methods checks measures criteria routes
 reader sections factors judges study mechanism grid theory
 chunk plan ledger pool
-table calibration verdict wording decide outcome
-run estimate
+table calibration verdict wording sentences decide sensitivity outcome
+report
+run documents estimate
 cli front
 """.split()
 

@@ -6,7 +6,7 @@ import numpy as np
 import pandas as pd
 import pytest
 
-from workbench import wording
+from workbench import sentences
 from workbench.criteria import CRITERIA, Verdict
 from workbench.decide import Standing, Status, best, choice, contests, worst_case_difference
 from workbench.table import DIFFERENCE_COLUMNS, portion
@@ -195,8 +195,8 @@ def test_a_rate_at_its_limit_is_hardly_settled():
 
 
 def test_sentences_open_as_they_must():
-    assert wording.settling(advice(690, 10_000, 0.075, 0.065, 0.08, 1e-3), 10_000).startswith("About ")
-    assert "hardly settle" in wording.settling(advice(750, 10_000, 0.075, 0.07, 0.08, 1e-4), 10_000)
+    assert sentences.settling(advice(690, 10_000, 0.075, 0.065, 0.08, 1e-3), 10_000).startswith("About ")
+    assert "hardly settle" in sentences.settling(advice(750, 10_000, 0.075, 0.07, 0.08, 1e-4), 10_000)
 
 
 def study_of(**criteria):
@@ -215,7 +215,7 @@ def told(status, chosen, standings, open_rows=(), rivalry=(), **criteria):
     for one in standings:
         one.errors["sizes"] = one.detections["sizes"] = "a"
     study = study_of(**({"power": SimpleNamespace(at="real", least=0.8)} | criteria))
-    return " ".join(wording.decision(study, status, chosen, standings, list(open_rows), list(rivalry)))
+    return " ".join(sentences.decision(study, status, chosen, standings, list(open_rows), list(rivalry)))
 
 
 def test_a_choice_is_told_with_its_reasons():
@@ -229,7 +229,7 @@ def test_a_choice_is_told_with_its_reasons():
 
 def test_a_power_that_falls_short_asks_for_sizes():
     short = Standing("a", "a", "means", True, False, Verdict.MEETS, Verdict.FAILS, *standing_rows([0.6]))
-    assert "larger sizes are needed, not another test" in told("chosen", [short], [short])
+    assert "larger sizes are needed rather than another choice" in told("chosen", [short], [short])
     open_power = Standing(
         "a", "a", "means", True, False, Verdict.MEETS, Verdict.UNDECIDED, *standing_rows([0.8])
     )

@@ -80,7 +80,8 @@ def test_a_run_done_again_leaves_every_byte_as_it_was(tmp_path):
     table_of(TEXT, tmp_path)
     before = {path.name: path.read_bytes() for path in tmp_path.iterdir()}
     assert set(before) == {
-        *("ledger.sqlite", "table.csv", "differences.csv", "branches.csv", "manifest.json", "experiment.toml")
+        *("ledger.sqlite", "table.csv", "differences.csv", "branches.csv", "calibration.csv"),
+        *("manifest.json", "experiment.toml"),
     }
     table_of(TEXT, tmp_path)
     del before["ledger.sqlite"]  # opening it for writing is noted in its first bytes

@@ -12,8 +12,9 @@ from workbench.errors import WorkbenchError
 COMMANDS = {
     "new": "Write a commented experiment file.",
     "check": "Read an experiment file and show its conditions and true quantities; run nothing.",
-    "run": "Simulate what is missing, write the tables, print the decision.",
+    "run": "Simulate what is missing, write tables and report, print the decision.",
     "status": "Show how far a result is.",
+    "report": "Write tables, report and figures of a result again.",
     "decide": "Apply the criteria to a result.",
     "methods": "List the methods, what each tests and assumes, and its source.",
 }

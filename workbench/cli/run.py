@@ -8,6 +8,7 @@ from workbench.cli.decide import exit_status
 from workbench.cli.progress import Reporter, silent
 from workbench.cli.summary import print_outcome
 from workbench.cores import default_workers
+from workbench.documents import write_documents
 from workbench.errors import WorkError
 from workbench.run import default_directory, run
 from workbench.study import read, with_overrides
@@ -26,16 +27,17 @@ from workbench.study import read, with_overrides
 @options.as_json
 @options.quiet
 def command(file, out, workers, replications, seed, as_json, quiet):
-    """Simulate what FILE asks for and is missing, write the tables, print the decision.
+    """Simulate what FILE asks for and is missing, write tables and report, print the decision.
 
-    Writes ledger.sqlite, table.csv, differences.csv, manifest.json and experiment.toml. A run that was cut off is
-    taken up where it stopped. Ends with 0 (chosen or tie) or 3 (the question stays open).
+    Writes ledger.sqlite, the tables (CSV), report.html, figures/, manifest.json and experiment.toml. A run that was
+    cut off is taken up where it stopped. Ends with 0 (chosen or tie) or 3 (the question stays open).
 
     Example: workbench run experiments/lap_shear.toml
     """
     study = with_overrides(read(file), seed, replications)
     watch = silent if quiet else Reporter(REPLICATIONS)
     outcome = run(study, out or default_directory(study), workers or default_workers(), watch)
+    write_documents(outcome)
     if as_json:
         options.print_json(outcome.decision.as_data())
     else:

@@ -32,7 +32,9 @@ def parts(outcome, narrow):
     yield from map(Text, decision.sentences[1:])
     yield from (Text(f"Not eligible: {name} {reason}.") for name, reason in decision.excluded.items())
     yield Text(f"\n{outcome.agreement.sentence}")
-    yield Text(f"Plan {study.key}, digest {outcome.tables.digest[:16]}. Tables in {outcome.directory}.")
+    yield Text(
+        f"Plan {study.key}, digest {outcome.tables.digest[:16]}. Report and tables in {outcome.directory}."
+    )
     yield Text(CAUTION)
 
 

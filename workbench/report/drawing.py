@@ -1,0 +1,277 @@
+"""Drawing: lines, areas, marks and texts of a panel, written as SVG or painted as PNG."""
+
+import io
+import unicodedata
+import warnings
+from html import escape
+from typing import NamedTuple
+
+import numpy as np
+from matplotlib.backends.backend_agg import FigureCanvasAgg
+from matplotlib.figure import Figure
+from matplotlib.patches import Circle, PathPatch
+from matplotlib.path import Path
+from matplotlib.text import Text
+
+from workbench.texts import bare
+
+FONT = "system-ui, -apple-system, 'Segoe UI', Roboto, 'Noto Sans', 'Liberation Sans', Arial, sans-serif"
+
+PAINTED_FONT = "DejaVu Sans"
+"""Comes with matplotlib, so a painted figure is the same on every machine."""
+
+WIDTH_OF_A_LETTER = 0.56
+"""Of the size of type, on average; wide letters of other scripts take it all."""
+
+
+class Outline(NamedTuple):
+    """A line or area through points; several parts may share one style."""
+
+    parts: list
+    """Arrays (n, 2) of x and y, y pointing down."""
+    stroke: str | None
+    fill: str | None
+    width: float
+    dash: tuple
+    closed: bool
+
+
+class Disc(NamedTuple):
+    """A circle."""
+
+    x: float
+    y: float
+    radius: float
+    stroke: str | None
+    fill: str | None
+    width: float
+
+
+class Words(NamedTuple):
+    """A line of text; anchor is start, middle or end."""
+
+    x: float
+    y: float
+    text: str
+    role: str
+    size: float
+    anchor: str
+    bold: bool
+
+
+class Drawing:
+    """Items in the order in which they are drawn; one unit is a pixel at the size a panel is read at."""
+
+    def __init__(self, width, height, label=""):
+        self.width, self.height, self.label = width, height, label
+        self.items = []
+
+    def line(self, points, role, width=1.0, dash=()):
+        """A line through points (n, 2)."""
+        self.lines([points], role, width, dash)
+
+    def lines(self, parts, role, width=1.0, dash=()):
+        """Several lines of one style."""
+        parts = [np.asarray(points, dtype=float) for points in parts if len(points)]
+        if parts:
+            self.items.append(Outline(parts, role, None, width, tuple(dash), False))
+
+    def area(self, points, fill, stroke=None, width=1.0):
+        """A closed area."""
+        self.items.append(Outline([np.asarray(points, dtype=float)], stroke, fill, width, (), True))
+
+    def box(self, x, y, width, height, fill):
+        """A filled rectangle."""
+        self.area([(x, y), (x + width, y), (x + width, y + height), (x, y + height)], fill)
+
+    def disc(self, x, y, radius, fill, stroke=None, width=1.0):
+        """A circle."""
+        self.items.append(Disc(float(x), float(y), radius, stroke, fill, width))
+
+    def mark(self, kind, x, y, role, size=8.0, hollow=False):
+        """A method's mark, filled or hollow, about `size` wide."""
+        fill, r = ("paper" if hollow else role), size / 2
+        if kind == "circle":
+            return self.disc(x, y, r - 0.4, fill, role, 1.2)
+        points = np.array(MARKS[kind]) * r + (x, y)
+        return self.area(points, fill, role, 1.2)
+
+    def text(self, x, y, text, role="ink2", size=10.0, anchor="start", bold=False):
+        """A line of text whose base line starts, is centred or ends at (x, y)."""
+        self.items.append(Words(float(x), float(y), bare(text), role, size, anchor, bold))
+
+    def place(self, other, x, y):
+        """Another drawing's items, moved to (x, y)."""
+        self.items += [moved(item, x, y) for item in other.items]
+
+
+MARKS = {
+    "square": [(-0.85, -0.85), (0.85, -0.85), (0.85, 0.85), (-0.85, 0.85)],
+    "diamond": [(0, -1.15), (1.15, 0), (0, 1.15), (-1.15, 0)],
+    "up": [(0, -1.05), (1.05, 0.85), (-1.05, 0.85)],
+    "down": [(0, 1.05), (1.05, -0.85), (-1.05, -0.85)],
+    "plus": [
+        *[(-0.35, -1.1), (0.35, -1.1), (0.35, -0.35), (1.1, -0.35), (1.1, 0.35), (0.35, 0.35)],
+        *[(0.35, 1.1), (-0.35, 1.1), (-0.35, 0.35), (-1.1, 0.35), (-1.1, -0.35), (-0.35, -0.35)],
+    ],
+}
+"""Outlines of marks in units of half their width; a circle is drawn as one."""
+
+
+def moved(item, x, y):
+    """An item moved by (x, y)."""
+    if isinstance(item, Outline):
+        return item._replace(parts=[points + np.array((x, y)) for points in item.parts])
+    return item._replace(x=item.x + x, y=item.y + y)
+
+
+def fitted(text, width, size):
+    """A text cut so that it is at most about `width` wide in type of the given size."""
+    room = width / size
+    for place, letter in enumerate(text):
+        room -= 1.0 if unicodedata.east_asian_width(letter) in "WF" else WIDTH_OF_A_LETTER
+        if room < 0:
+            return text[: max(place - 1, 1)].rstrip() + "…"
+    return text
+
+
+def number(value):
+    """A coordinate with one decimal at most."""
+    return f"{value:.1f}".removesuffix(".0").replace("-0.", "-.") if abs(value) >= 0.05 else "0"
+
+
+def inline(drawing):
+    """The SVG element of a drawing for a page, coloured by the page's variables."""
+    head = f'<svg viewBox="0 0 {number(drawing.width)} {number(drawing.height)}" role="img"'
+    return f'{head} aria-label="{escape(bare(drawing.label))}">{body(drawing, variable)}</svg>'
+
+
+def document(drawing, colours, width):
+    """A drawing as an SVG file, `width` millimetres wide, coloured by a palette."""
+    height = width * drawing.height / drawing.width
+    head = f'<svg xmlns="http://www.w3.org/2000/svg" width="{width:g}mm" height="{height:.2f}mm" role="img"'
+    head += f' viewBox="0 0 {number(drawing.width)} {number(drawing.height)}" font-family="{FONT}">'
+    ground = f'<rect width="100%" height="100%" fill="{colours["paper"]}"/>'
+    title = f"<title>{escape(bare(drawing.label))}</title>"
+    return (
+        f'<?xml version="1.0" encoding="UTF-8"?>\n{head}{title}{ground}{body(drawing, colours.get)}</svg>\n'
+    )
+
+
+def variable(role):
+    """A role as a page names it."""
+    return f"var(--{role})"
+
+
+def body(drawing, colour):
+    """The SVG elements of all items."""
+    return "".join(ELEMENTS[type(item)](item, colour) for item in drawing.items)
+
+
+def outline_element(item, colour):
+    """An Outline as SVG."""
+    end = "Z" if item.closed else ""
+    path = "".join("M" + "L".join(f"{number(x)} {number(y)}" for x, y in part) + end for part in item.parts)
+    return f'<path d="{path}"{style(item, colour)}{dashes(item)}/>'
+
+
+def disc_element(item, colour):
+    """A Disc as SVG."""
+    place = f'cx="{number(item.x)}" cy="{number(item.y)}" r="{number(item.radius)}"'
+    return f"<circle {place}{style(item, colour)}/>"
+
+
+def words_element(item, colour):
+    """Words as SVG."""
+    anchor = "" if item.anchor == "start" else f' text-anchor="{item.anchor}"'
+    weight = ' font-weight="700"' if item.bold else ""
+    place = f'x="{number(item.x)}" y="{number(item.y)}" font-size="{number(item.size)}"'
+    return f'<text {place} fill="{colour(item.role)}"{anchor}{weight}>{escape(item.text)}</text>'
+
+
+ELEMENTS = {Outline: outline_element, Disc: disc_element, Words: words_element}
+
+
+def style(item, colour):
+    """Fill and stroke of an item as SVG."""
+    fill = f' fill="{colour(item.fill) if item.fill else "none"}"'
+    if not item.stroke:
+        return fill
+    return f'{fill} stroke="{colour(item.stroke)}" stroke-width="{item.width:g}"'
+
+
+def dashes(item):
+    """The dash of an Outline as SVG."""
+    return f' stroke-dasharray="{" ".join(f"{length:g}" for length in item.dash)}"' if item.dash else ""
+
+
+def painted(drawing, colours, width, dots_per_inch=300):
+    """A drawing as the bytes of a PNG file, `width` millimetres wide."""
+    inches = width / 25.4
+    unit = 72 * inches / drawing.width
+    figure = Figure(
+        (inches, inches * drawing.height / drawing.width), dots_per_inch, facecolor=colours["paper"]
+    )
+    for item in drawing.items:
+        figure.add_artist(ARTISTS[type(item)](item, drawing, colours, unit))
+    target = io.BytesIO()
+    with warnings.catch_warnings():
+        warnings.filterwarnings("ignore", "Glyph .* missing")  # letters the font lacks are painted as boxes
+        FigureCanvasAgg(figure).print_png(
+            target, pil_kwargs={"compress_level": 2}, metadata={"Software": None}
+        )
+    return target.getvalue()
+
+
+def shares(points, drawing):
+    """Points as shares of a figure's width and height, y pointing up."""
+    return points / (drawing.width, -drawing.height) + (0, 1)
+
+
+def outline_artist(item, drawing, colours, unit):
+    """An Outline for matplotlib."""
+    codes, vertices = [], []
+    for part in item.parts:
+        vertices += [*part, part[0]] if item.closed else [*part]
+        codes += [Path.MOVETO] + [Path.LINETO] * (len(part) - 1) + [Path.CLOSEPOLY] * item.closed
+    artist = PathPatch(Path(shares(np.array(vertices), drawing), codes), **paint(item, colours, unit))
+    if item.dash:
+        artist.set_linestyle((0, [length / item.width for length in item.dash]))
+        artist.set_capstyle("butt")
+    return artist
+
+
+def disc_artist(item, drawing, colours, unit):
+    """A Disc for matplotlib; its path is stretched so that it is round on paper."""
+    path = Circle((item.x, item.y), item.radius)
+    path = path.get_path().transformed(path.get_patch_transform())
+    return PathPatch(Path(shares(path.vertices, drawing), path.codes), **paint(item, colours, unit))
+
+
+def paint(item, colours, unit):
+    """Fill and stroke of an item for matplotlib."""
+    return {
+        "facecolor": colours[item.fill] if item.fill else "none",
+        "edgecolor": colours[item.stroke] if item.stroke else "none",
+        "linewidth": item.width * unit if item.stroke else 0,
+    }
+
+
+def words_artist(item, drawing, colours, unit):
+    """Words for matplotlib."""
+    x, y = shares(np.array([item.x, item.y]), drawing)
+    return Text(
+        x,
+        y,
+        item.text,
+        color=colours[item.role],
+        fontsize=item.size * unit,
+        fontfamily=PAINTED_FONT,
+        fontweight="bold" if item.bold else "normal",
+        horizontalalignment={"start": "left", "middle": "center", "end": "right"}[item.anchor],
+        verticalalignment="baseline",
+        parse_math=False,
+    )
+
+
+ARTISTS = {Outline: outline_artist, Disc: disc_artist, Words: words_artist}

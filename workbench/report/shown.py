@@ -1,0 +1,96 @@
+"""Shown: simulated numbers as a page prints them, each with its full value beside it."""
+
+from dataclasses import dataclass
+
+from markupsafe import Markup, escape
+
+from workbench.numbers import decimals, limits, proportion
+from workbench.texts import CLOSE, OPEN
+
+MINUS = "\u2212"
+
+
+@dataclass(frozen=True)
+class Shown:
+    """A number as people read it, and as it stands in a table."""
+
+    value: float
+    text: str
+
+    def __str__(self):
+        return self.text
+
+    def __html__(self):
+        return Markup('<data value="{}">{}</data>').format(plain(self.value), self.text)
+
+
+@dataclass(frozen=True)
+class Span:
+    """The two ends of an interval, rounded outwards."""
+
+    lower: float
+    upper: float
+    text: str
+
+    def __str__(self):
+        return self.text
+
+    def __html__(self):
+        low, high = self.text.split(" to ")
+        ends = Shown(self.lower, low), Shown(self.upper, high)
+        return Markup("{} to {}").format(*ends)
+
+
+def plain(value):
+    """A number with all its digits."""
+    return repr(int(value)) if float(value).is_integer() and abs(value) >= 1 else repr(float(value))
+
+
+def rate(value, digits, rejections=None, replications=None):
+    """A rate; none at all in so many is told as such."""
+    if rejections == 0:
+        return Shown(0.0, f"0 of {replications:,}")
+    return Shown(value, proportion(value, digits))
+
+
+def span(lower, upper, digits):
+    """An interval of a rate, with one decimal more than the rate itself."""
+    return Span(lower, upper, limits(lower, upper, digits + 1).replace("-", MINUS))
+
+
+def signed(value, digits):
+    """A difference with its sign."""
+    text = f"{value:+.{digits}f}".replace("-", MINUS)
+    return Shown(value, text if float(f"{value:.{digits}f}") else f"{0:.{digits}f}")
+
+
+def signed_span(lower, upper, digits):
+    """An interval of a difference."""
+    return Span(lower, upper, limits(lower, upper, digits + 1).replace("-", MINUS))
+
+
+def points(value, standard_error):
+    """A difference of two shares in percentage points, for a sentence."""
+    digits = max(0, decimals(standard_error) - 2)
+    return Shown(value, f"{100 * value:.{digits}f}".replace("-", MINUS))
+
+
+def count(number):
+    """A count with commas."""
+    return Shown(number, f"{number:,}")
+
+
+def quantity(value):
+    """A true quantity with four significant digits; a dash where it does not exist."""
+    if value is None:
+        return "–"
+    text = f"{value:.4g}"
+    if "e" not in text and abs(value) >= 1000:
+        text = f"{value:,.0f}"
+    return text.replace("-", MINUS)
+
+
+def prose(text):
+    """A sentence for a page: escaped, with users' texts in elements that isolate their direction of writing."""
+    found = str(escape(text)).replace(OPEN, '<bdi class="q">').replace(CLOSE, "</bdi>")
+    return Markup(found)
