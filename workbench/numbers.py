@@ -33,6 +33,8 @@ def limits(lower, upper, digits):
 def percent(rate, standard_error):
     """A rate as a percentage for a sentence."""
     digits = max(0, decimals(standard_error) - 2)
+    if rate in (0, 1):
+        return f"{100 * rate:.0f}{NO_BREAK}%"
     shown = f"{100 * rate:.{digits}f}"
     if 0 < rate and float(shown) == 0:
         return f"less than {10.0**-digits:.{digits}f}{NO_BREAK}%"

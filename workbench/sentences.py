@@ -7,6 +7,12 @@ from workbench.words import phrases
 
 SAY = phrases("decision")
 
+FEW = 2
+"""Of more methods that tie, the reasons are given once for all."""
+
+CURIOSITY = 0.001
+"""Up to this share of results without a p-value no sentence is lost on them; tables count them all."""
+
 
 def exclusion(study, standing):
     """Why a method is not eligible, as one sentence."""
@@ -52,8 +58,11 @@ def tie_sentences(study, chosen, standings):
         sentences.append(SAY.not_ranked())
     elif not chosen[0].detections.empty:
         sentences.append(SAY.within_margin(f"{study.criteria.tie:g}"))
+    if len(chosen) > FEW:
+        low, high = study.criteria.size.band(study.levels[0])
+        sentences.append(SAY.all_kept(len(chosen[0].errors), study.question.compare, f"{low:g}", f"{high:g}"))
     for one in chosen:
-        sentences += reasons(study, one)
+        sentences += reasons(study, one) if len(chosen) <= FEW else valueless(study, one)
     return [*sentences, *power_shortfall(study, chosen)]
 
 
@@ -111,8 +120,21 @@ def reasons(study, one):
     if not one.answers:
         found.append(SAY.admitted(one.hypothesis, study.question.compare))
     if one.least is not None and study.criteria.power is not None:
-        found.append(SAY.finds(isolated(study.criteria.power.at), shown(study, one.least)))
-    return found
+        found.append(
+            SAY.finds(isolated(study.criteria.power.at), shown(study, one.least), len(one.detections))
+        )
+    return found + valueless(study, one)
+
+
+def valueless(study, one):
+    """A warning where a method had no p-value for a share of datasets that is more than a curiosity."""
+    rows = [row for some in (one.errors, one.detections) for _, row in some.iterrows()]
+    worst = max(rows, key=lambda row: row["undefined"] / row["replications"])
+    share = worst["undefined"] / worst["replications"]
+    if share <= CURIOSITY:
+        return []
+    spread = (share * (1 - share) / worst["replications"]) ** 0.5
+    return [SAY.no_value(one.label, percent(share, spread), shown(study, worst))]
 
 
 def kept(study, one):

@@ -20,10 +20,13 @@ def thousands(number):
 
 
 def rate_with_limits(row):
-    """A rate and its interval as percentages."""
+    """A rate and its interval as percentages; where none or all reject, also the count in so many."""
     digits = max(0, decimals(row["mcse"]) - 1)
     ends = limits(100 * row["lower"], 100 * row["upper"], digits)
-    return {"rate": percent(row["rate"], row["mcse"]), "limits": f"{ends}{NO_BREAK}%"}
+    found = {"rate": percent(row["rate"], row["mcse"]), "limits": f"{ends}{NO_BREAK}%", "counted": ""}
+    if row["rate"] in (0, 1):
+        found["counted"] = f"{row['rejections']:,} of {row['replications']:,}"
+    return found
 
 
 def place(study, row):

@@ -12,8 +12,10 @@ from hypothesis import given, settings
 from hypothesis import strategies as st
 from scipy.integrate import quad
 from scipy.special import beta, betainc, betaincc, chdtr, chdtrc, gammaln
+from scipy.stats import binom, norm
 
 from workbench.theory import quadratic_form
+from workbench.theory.exact import distances
 from workbench.theory.normal_f import classical_f_rate, critical_ratio
 from workbench.theory.quadratic_form import Form, best_tilt, positive_share
 
@@ -391,3 +393,18 @@ def test_neither_the_origin_nor_the_unit_of_the_values_matters(design, alpha, sh
     scaled, scaled_error = rate_of(design, alpha, factor=factor)
     assert shifted == pytest.approx(found, abs=error + shifted_error)
     assert scaled == pytest.approx(found, abs=error + scaled_error)
+
+
+def test_distances_are_standard_errors_for_common_events_and_right_for_rare_ones():
+    """Normal quantiles of binomial mid-shares; binomial and normal of SciPy 1.17."""
+    x, n, p = np.array([4985.0, 52000.0]), np.array([100000.0, 100000.0]), np.array([0.05, 0.52])
+    assert np.allclose(distances(x, n, p), (x / n - p) / np.sqrt(p * (1 - p) / n), atol=0.01)
+    # One event where 0.04 are expected happens once in 25 times; the normal formula calls that 4.7 standard errors.
+    rare = binom.cdf(0, 4000, 1e-5) + binom.pmf(1, 4000, 1e-5) / 2
+    assert distances(np.array([1.0]), np.array([4000.0]), np.array([1e-5]))[0] == pytest.approx(
+        norm.ppf(rare)
+    )
+    assert distances(np.array([3999.0]), np.array([4000.0]), np.array([1 - 1e-5]))[0] == pytest.approx(
+        -norm.ppf(rare)
+    )
+    assert np.isfinite(distances(np.array([0.0]), np.array([1e5]), np.array([0.5]))).all()

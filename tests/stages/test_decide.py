@@ -219,9 +219,11 @@ def told(status, chosen, standings, open_rows=(), rivalry=(), **criteria):
 
 
 def test_a_choice_is_told_with_its_reasons():
-    a, b = standing("a", [0.9]), standing("b", [0.7])
+    a, b = standing("a", [0.9, 0.95]), standing("b", [0.7, 0.8])
     text = told("chosen", [a], [a, b])
     assert text.startswith("Use the a.") and "at least 90" in text and "b 70" in text
+    one = standing("a", [0.9])
+    assert "at least" not in told("chosen", [one], [one])
     assert "larger sizes" not in text and "another question" not in text
     admitted = standing("a", [0.9], answers=False, admitted=True)
     assert "the file admits it although it answers another question" in told("chosen", [admitted], [admitted])
@@ -264,3 +266,25 @@ def test_how_many_replications_tell_two_methods_apart(limits, wanted):
     """Limits of half-width h about d need n (h / d)^2 replications to leave 0, or n (h / (m - d))^2 to tie."""
     found = settling_total(limits, 0.01, 10_000)
     assert found == wanted or abs(found - wanted) < 200
+
+
+def test_a_method_without_p_values_is_no_silent_winner():
+    a = standing("a", [0.9])
+    a.errors["undefined"] = 5000
+    text = told("chosen", [a], [a])
+    assert "Beware: the a had no p-value for 50" in text
+    a.errors["undefined"] = 5
+    assert "Beware" not in told("chosen", [a], [a])
+
+
+def test_many_that_tie_are_told_at_once():
+    some = [standing(name, [0.9]) for name in "abc"]
+    text = told("tie", some, some)
+    assert text.count("erred in") == 0 and "Each kept its error rate within the limits 0.025 to 0.075" in text
+    assert told("tie", some[:2], some).count("erred in") == 2
+
+
+def test_none_and_all_are_counts():
+    rare, sure = standing("a", [0.0]), standing("b", [1.0])
+    assert "0 of 10,000 studies" in told("chosen", [rare], [rare])
+    assert "10,000 of 10,000 studies" in told("chosen", [sure], [sure])

@@ -15,7 +15,7 @@ from workbench.texts import bare
 from workbench.words import phrases
 
 NOUNS, SAY = phrases("nouns"), phrases("decision")
-ROW = {"rate": "9 %", "limits": "8 to 10 %", "levels": ["few", "wide"], "condition": 3}
+ROW = {"rate": "9 %", "limits": "8 to 10 %", "counted": "", "levels": ["few", "wide"], "condition": 3}
 TEMPLATES = Path(wording.__file__).parent / "words" / "en"
 NASTY = ["{{ 7*7 }}", "<b>wide</b> & deep", "{% raw %}", "{# gone #}", "two  spaces", "no\u00a0\u00a0break"]
 

@@ -79,8 +79,9 @@ def described(study, row, narrow):
     if row is None:
         return [""] if narrow else ["", "", ""]
     digits = decimals(row["mcse"])
+    none = row["rejections"] == 0
     cells = [
-        proportion(row["rate"], digits),
+        f"0 of {row['replications']:,}" if none else proportion(row["rate"], digits),
         limits(row["lower"], row["upper"], digits + 1),
         wording.place(study, row),
     ]

@@ -185,7 +185,7 @@ def references(book):
     used += [("", criterion) for criterion in study.criteria.fixed if needs_source(criterion)]
     for _, part in used:
         names = found.setdefault(part.cite, [])
-        name = part.name.replace("_", " ")
+        name = getattr(part, "label", part.name.replace("_", " "))
         if name not in names:
             names.append(name)
     return sorted(found.items())

@@ -6,6 +6,7 @@ from workbench.measures.rate import clopper_pearson
 from workbench.report.axes import Axis, bottom_axis, left_axis, pushed_apart
 from workbench.report.drawing import Drawing
 from workbench.report.figure import Sheet, numbered_panels
+from workbench.sentences import CURIOSITY
 
 WIDTH, HEIGHT, LEFT, RIGHT, TOP, FOOT = 288, 236, 44, 216, 8, 40
 
@@ -72,7 +73,8 @@ class Curves:
 def title(book, curves):
     """Whether the leading method would hold at other levels: not at the first that breaks it, open, or at all."""
     method, label = book.lead.name, book.called(book.lead.name)
-    if book.lead.size is None or book.lead.size.value == "fails":
+    undefined = (book.lead.errors["undefined"] / book.lead.errors["replications"]).max()
+    if book.lead.size is None or book.lead.size.value == "fails" or undefined > CURIOSITY:
         return book.findings.rates_at_other_levels()
     still_open = []
     for level in (level for level in OTHER if level != book.level):

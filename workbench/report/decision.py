@@ -67,8 +67,10 @@ def costs(book):
     """[sentence]: what is given up by the choice."""
     findings, found = book.findings, []
     lead = book.lead
-    if not lead.possible:
+    if not lead.counted_in or (lead.size is not None and not lead.possible):
         return [findings.no_cost_without_choice()]
+    if not lead.eligible:
+        return [findings.cost_open()]
     if not rivalled(book):
         found.append(findings.no_rival_to_lose_to(book.called(lead.name)))
     else:

@@ -1,9 +1,10 @@
 """Smaller pieces of evidence: hypotheses, theory, undefined results, ends of routes."""
 
 from workbench import texts
-from workbench.grid import HYPOTHESES, holds_as_recorded
+from workbench.grid import HYPOTHESES, holds_as_recorded, recorded_quantities
 from workbench.numbers import decimals
 from workbench.report import shown
+from workbench.theory.exact import distances
 
 ALL_HYPOTHESES = (*HYPOTHESES, "distributions", "stochastic size")
 
@@ -15,7 +16,7 @@ def hypotheses(book):
     """[(what holds, [condition number])]: conditions by which hypotheses are true as recorded."""
     patterns = {}
     for condition in book.nulls:
-        holds = tuple(name in holds_as_recorded(condition) for name in ALL_HYPOTHESES)
+        holds = tuple(holding(condition, name) for name in ALL_HYPOTHESES)
         patterns.setdefault(holds, []).append(condition)
     return {
         "names": ALL_HYPOTHESES,
@@ -34,6 +35,14 @@ def hypotheses(book):
         ],
         "unequal": [one.number for one in book.nulls if not book.equal_as_recorded[one.number]],
     }
+
+
+def holding(condition, hypothesis):
+    """Whether a hypothesis is true of a condition as recorded; None where what it speaks of does not exist."""
+    quantity = HYPOTHESES.get(hypothesis)
+    if quantity and any(group[quantity] is None for group in recorded_quantities(condition)):
+        return None
+    return hypothesis in holds_as_recorded(condition)
 
 
 def shared_levels(book, some):
@@ -63,9 +72,8 @@ def theory(book):
     agreement = book.outcome.agreement
     rates = book.outcome.tables.rates
     known = rates[rates["exact"].notna()].copy()
-    known["distance"] = (known["rate"] - known["exact"]) / (
-        known["exact"] * (1 - known["exact"]) / known["replications"]
-    ) ** 0.5
+    counts = (known[name].to_numpy(dtype=float) for name in ("rejections", "replications", "exact"))
+    known["distance"] = distances(*counts)
     known = known.reindex(known["distance"].abs().sort_values(ascending=False, kind="stable").index)
     rows = [theory_row(book, row) for row in known.head(MOST_ROWS).itertuples()]
     return {
@@ -118,33 +126,45 @@ def branches(book):
     """For each route its ends: how often they are taken, and the largest error within."""
     table = book.outcome.tables.branches
     table = table[(table["reading"] == "error") & (table["alpha"] == book.level)]
-    found = {}
-    for (route, end), rows in table.groupby(["route", "end"], sort=False):
-        found.setdefault(route, []).append(branch(book, end, rows))
-    return [
-        {"label": book.label(route), "ends": ends, "title": branch_title(book, route, ends)}
-        for route, ends in found.items()
-    ]
+    found = []
+    for route, rows in table.groupby("route", sort=False):
+        ends = dict(book.study.judge(route).method.ends())
+        worst = [worst_within(some) for _, some in rows.groupby("end", sort=False)]
+        digits = min((decimals(one["mcse_within"]) for one in worst if one is not None), default=3)
+        told = [
+            branch(book, ends[end], end, some, one, digits)
+            for (end, some), one in zip(rows.groupby("end", sort=False), worst, strict=True)
+        ]
+        found.append({"label": book.label(route), "ends": told, "title": branch_title(book, route, told)})
+    return found
 
 
-def branch(book, end, rows):
-    """One end of a route over the null conditions."""
-    shares = rows["share"]
+def worst_within(rows):
+    """The row of the largest error within an end; None where no dataset came there."""
     taken = rows[rows["taken"] > 0]
-    worst = None if taken.empty else taken.loc[taken["rate_within"].idxmax()]
-    digits = 3 if worst is None else decimals(worst["mcse_within"])
-    return {
+    return None if taken.empty else taken.loc[taken["rate_within"].idxmax()]
+
+
+def branch(book, method, end, rows, worst, digits):
+    """One end of a route over the null conditions."""
+    found = {
         "path": end.replace("_", " "),
-        "method": rows["method"].iloc[0].replace("_", " "),
-        "low": shown.rate(shares.min(), 3),
-        "high": shown.rate(shares.max(), 3),
+        "method": method.label,
+        "low": shown.rate(rows["share"].min(), 3),
+        "high": shown.rate(rows["share"].max(), 3),
         "unchecked": shown.count(int(rows["unchecked"].sum())),
-        "within": None if worst is None else shown.rate(worst["rate_within"], digits),
-        "mcse": None
-        if worst is None
-        else shown.Shown(worst["mcse_within"], f"{worst['mcse_within']:.{digits + 1}f}"),
-        "place": None if worst is None else book.name(book.conditions[worst["condition"]]),
-        "worst": 0.0 if worst is None else float(worst["rate_within"]),
+        "within": None,
+        "mcse": None,
+        "place": None,
+        "worst": 0.0,
+    }
+    if worst is None:
+        return found
+    return found | {
+        "within": shown.rate(worst["rate_within"], digits),
+        "mcse": shown.Shown(worst["mcse_within"], f"{worst['mcse_within']:.{digits + 1}f}"),
+        "place": book.name(book.conditions[worst["condition"]]),
+        "worst": float(worst["rate_within"]),
     }
 
 

@@ -26,7 +26,13 @@ from workbench.report.shown import prose
 FEW = 1000
 """Below so many replications a report says that it is exploratory."""
 
+LARGE = 100
+"""With more conditions a browser lays out only the tables in view."""
+
 LONGEST_TITLE = 200
+
+ON_A_PAGE = 6
+"""A figure of at most so many panels fits a printed page."""
 
 FONTS = (
     '--text:system-ui,-apple-system,"Segoe UI",Roboto,"Noto Sans","Liberation Sans",Arial,sans-serif;'
@@ -44,7 +50,13 @@ def environment():
         trim_blocks=True,
         lstrip_blocks=True,
     )
-    made.filters |= {"prose": prose, "short": texts.shortened, "ranges": evidence.ranges, "sizes": sizes}
+    made.filters |= {
+        "prose": prose,
+        "short": texts.shortened,
+        "ranges": evidence.ranges,
+        "sizes": sizes,
+        "whole": whole,
+    }
     made.globals["swatch"] = swatch_element
     return made
 
@@ -52,6 +64,11 @@ def environment():
 def sizes(numbers):
     """Sizes of groups as one text."""
     return " / ".join(map(str, numbers[:12])) + (" / …" if len(numbers) > 12 else "")
+
+
+def whole(sheet):
+    """A class for figures that fit a printed page and are not to be broken."""
+    return " whole" if len(sheet.panels) <= ON_A_PAGE else ""
 
 
 def swatch_element(slot, leads):
@@ -124,6 +141,7 @@ class Report:
             "groups": study.factors.groups,
             "scale": study.question.scale,
             "lead": book.label(book.lead.name),
+            "large": len(book.conditions) > LARGE,
             "few": study.simulation.replications < FEW,
             "asked": asked(book),
             "decision": decision(book),

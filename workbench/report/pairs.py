@@ -41,6 +41,8 @@ def pairs(book):
 def title(book, rivals):
     """How the leading method stands against the nearest rival that keeps its error rate."""
     kept = [one for one in rivals if one.possible]
+    if not book.nulls or not book.lead.possible:
+        return book.findings.on_the_same_data()
     if not kept:
         return book.findings.no_rival(book.called(book.lead.name))
     rival = max(kept, key=lambda one: one.detections["rate"].min())
@@ -63,9 +65,6 @@ def panel(book, axis, conditions, rival):
     height = TOP + ROW * len(conditions) + FOOT
     foot = height - FOOT + 2
     drawing = Drawing(WIDTH, height, panel_label(book, conditions, rival))
-    tie = min(book.study.criteria.tie, axis.high)
-    drawing.box(axis(-tie), TOP, axis(tie) - axis(-tie), foot - TOP, "tint")
-    drawing.line([(axis(0), TOP), (axis(0), foot)], "ink", 1.1)
     lead = book.lead.name
     drawing.text(
         axis(0) - 6,
@@ -89,6 +88,9 @@ def with_sign(value):
 
 def row(book, drawing, axis, y, condition, rival):
     """One condition's difference, with its interval and the rival's mark."""
+    tie = min(book.study.criteria.tie, axis.high)
+    drawing.box(axis(-tie), y - 6, axis(tie) - axis(-tie), 13, "tint")
+    drawing.line([(axis(0), y - 6), (axis(0), y + 7)], "ink", 1.1)
     value, _, low, high = book.pairs[condition.number, book.lead.name, rival]
     drawing.text(LEFT, y - 7, fitted(book.name(condition), RIGHT - LEFT, 9.5), "ink", 9.5)
     drawing.line([(axis(low), y), (axis(high), y)], "ink2", 1.3)

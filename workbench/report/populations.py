@@ -9,7 +9,7 @@ from workbench.mechanism import populations as undisturbed
 from workbench.report import shown
 from workbench.report.axes import Axis, bottom_axis
 from workbench.report.book import MOST_PANELS
-from workbench.report.drawing import Drawing, fitted
+from workbench.report.drawing import Drawing, fitted, width_of
 from workbench.report.figure import Sheet
 
 WIDTH, HEIGHT, RIGHT, TOP, FOOT = 288, 268, 282, 6, 36
@@ -97,8 +97,8 @@ class Scale:
     """The one axis of all panels, and the difference whose groups are outlined."""
 
     def __init__(self, book, found):
-        names = [len(texts.cleaned(name)) for name in book.study.group_names]
-        left = min(max(12 + 5.4 * max(names), NARROWEST), WIDEST)
+        widths = [9.5 * sum(map(width_of, texts.cleaned(name))) for name in book.study.group_names]
+        left = min(max(14 + max(widths), NARROWEST), WIDEST)
         self.log = book.study.question.scale == "multiplicative"
         self.shift = largest_target(book)
         ends = []
@@ -169,7 +169,7 @@ def panel(book, scale, condition):
 def axis_name(book, unit):
     """The outcome with its unit."""
     question = book.study.question
-    name = fitted(texts.cleaned(question.outcome) or book.words.outcome(), 150, 10.5)
+    name = fitted(texts.cleaned(question.outcome) or book.words.outcome(), 120, 10.5)
     return f"{name}, {fitted(texts.cleaned(unit), 60, 10.5)}" if unit else name
 
 
@@ -212,8 +212,11 @@ def trimmed(x, y, base):
 def shifted_outline(drawing, scale, condition, population, base, unit):
     """Where a group lies under the difference that must not be missed."""
     x, heights = profile(scale, condition, population)
+    if scale.lattice(condition) is not None:
+        bars = [[(at + 2, base), (at + 2, base - high * unit)] for at, high in zip(x, heights, strict=True)]
+        return drawing.lines([bar for bar in bars if bar[0][1] - bar[1][1] > 0.3], "ink2", 1.2, (2.5, 2))
     x, y = trimmed(x, base - heights * unit, base)
-    drawing.line(np.column_stack([x, y]), "ink2", 0.9, (2.5, 2))
+    return drawing.line(np.column_stack([x, y]), "ink2", 0.9, (2.5, 2))
 
 
 def position_marks(drawing, scale, condition, group, base, height):

@@ -52,7 +52,7 @@ def map_title(book):
 
 def grouped(book, conditions, cell):
     """[(heading, sizes, [(whether a gap stands before, condition, name, [cell])])] by the first factor that varies."""
-    first, inner = book.varied[:1], book.varied[1:]
+    first, inner = (book.varied[:1], book.varied[1:]) if len(book.varied) > 1 else ([], book.varied)
     groups, last = [], None
     for condition in conditions:
         key = [condition.levels[factor] for factor in first]

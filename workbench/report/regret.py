@@ -4,10 +4,10 @@ from dataclasses import dataclass
 
 from workbench.report import shown
 from workbench.report.axes import Axis, bottom_axis
-from workbench.report.drawing import Drawing
+from workbench.report.drawing import Drawing, fitted
 from workbench.report.figure import Sheet
 
-WIDTH, ROW, LEFT = 480, 40, 150
+WIDTH, ROW, LEFT = 340, 50, 2
 
 
 @dataclass(frozen=True)
@@ -66,12 +66,12 @@ def regret(book):
 def panel(book, given):
     """The Drawing: a row a method, a mark a condition, the largest as an upright bar with its number."""
     names = [*given]
-    height = ROW * len(names) + 46
+    height = ROW * len(names) + 44
     drawing = Drawing(WIDTH, height, label(book, given))
     top = max(max((one.value for one in some), default=0) for some in given.values())
-    axis = Axis(0, max(top * 1.12, 0.01), LEFT + 10, WIDTH - 46)
+    axis = Axis(0, max(top * 1.04, 0.01), LEFT + 10, WIDTH - 40)
     for place, name in enumerate(names):
-        row(book, drawing, axis, ROW * place + 24, name, given[name])
+        row(book, drawing, axis, ROW * place + 34, name, given[name])
     bottom_axis(drawing, axis, height - 38, book.words.given_up_axis())
     return drawing
 
@@ -79,7 +79,7 @@ def panel(book, given):
 def row(book, drawing, axis, y, name, given):
     """One method's marks."""
     bold = name in book.decision.chosen
-    drawing.text(LEFT, y + 4, book.label(name), "ink", 11, "end", bold)
+    drawing.text(LEFT, y - 18, fitted(book.label(name), WIDTH - 60, 11), "ink", 11, bold=bold)
     drawing.line([(axis.start, y), (axis.stop, y)], "rule", 0.8)
     last = {}
     for one in sorted(given, key=lambda one: one.value):
@@ -95,8 +95,8 @@ def row(book, drawing, axis, y, name, given):
             drawing.disc(x, y + lane, 2.4, "ink2" if one.trusted else "paper", "ink2")
     worst = most(given)
     x = float(axis(worst.value))
-    drawing.line([(x, y - 15), (x, y + 15)], "ink", 1.8)
-    drawing.text(x + 6, y - 8, shown.rate(worst.value, book.detection_digits), "ink", 10.5, "start", bold)
+    drawing.line([(x, y - 14), (x, y + 14)], "ink", 1.8)
+    drawing.text(x + 6, y + 4, shown.rate(worst.value, book.detection_digits), "ink", 10.5, "start", bold)
 
 
 def label(book, given):

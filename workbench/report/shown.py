@@ -47,10 +47,10 @@ def plain(value):
 
 
 def rate(value, digits, rejections=None, replications=None):
-    """A rate; none at all in so many is told as such."""
-    if rejections == 0:
-        return Shown(0.0, f"0 of {replications:,}")
-    return Shown(value, proportion(value, digits))
+    """A rate; none at all, or all, in so many are told as such."""
+    if rejections is not None and rejections in (0, replications):
+        return Shown(value, f"{rejections:,} of {replications:,}")
+    return Shown(value, proportion(value, digits) if value else "0")
 
 
 def span(lower, upper, digits):

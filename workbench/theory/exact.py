@@ -4,7 +4,7 @@ from dataclasses import dataclass
 from functools import lru_cache
 
 import numpy as np
-from scipy.special import bdtr, bdtrc
+from scipy.special import bdtr, bdtrc, ndtri
 
 from workbench import mechanism
 from workbench.methods.classical_f import ClassicalF
@@ -14,6 +14,9 @@ from workbench.theory.normal_f import classical_f_rate
 
 TOO_RARE = 3e-7
 """Chance of a count as far out on its side as one that is taken for a disagreement."""
+
+TINY = 1e-300
+"""Smaller shares are told as this one: a count 37 standard errors away."""
 
 SETTLED = 1e-8
 """A numerical error from here on means that a rate is not known: of a million replications none would notice."""
@@ -74,8 +77,7 @@ def agreement(rates):
     """The Agreement of a table's rates with the exact ones in it."""
     known = rates[np.isfinite(rates["exact"])]
     exact, n, x = (known[name].to_numpy(dtype=float) for name in ("exact", "replications", "rejections"))
-    spread = np.sqrt(exact * (1 - exact) / n)
-    z = np.divide(x / n - exact, spread, out=np.zeros(len(known)), where=spread > 0)
+    z = distances(x, n, exact)
     wrong = too_far(x, n, exact, known["exact_error"].to_numpy(dtype=float))
     return Agreement(
         len(known),
@@ -83,6 +85,21 @@ def agreement(rates):
         float((z**2).mean()) if len(known) else 0.0,
         [row for _, row in known[wrong].iterrows()],
     )
+
+
+def distances(x, n, exact):
+    """(rows,) how far counts are from what a rate leads one to expect, in standard errors.
+
+    The standard normal value with the same share below it as the count has in its binomial distribution, half of
+    its own included: for common events (x / n - rate) / standard error, and right for rare ones too.
+    """
+    whole = np.asarray(n).astype(int)
+    own = bdtr(x, whole, exact) - np.where(x > 0, bdtr(np.maximum(x - 1, 0), whole, exact), 0.0)
+    own_above = bdtrc(np.maximum(x - 1, 0), whole, exact) - bdtrc(x, whole, exact)
+    below = np.where(x > 0, bdtr(np.maximum(x - 1, 0), whole, exact), 0.0) + own / 2
+    above = bdtrc(x, whole, exact) + np.where(x > 0, own_above, own) / 2
+    found = np.where(below < above, ndtri(np.maximum(below, TINY)), -ndtri(np.maximum(above, TINY)))
+    return np.where((exact > 0) & (exact < 1), found, 0.0)
 
 
 def too_far(x, n, exact, error):
