@@ -1,9 +1,10 @@
 """Sensitivity: what would be chosen if only some of the conditions had been asked about."""
 
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
-from workbench.decide import Status, choice, standing
+from workbench.decide import Status, choice
 from workbench.grid import answering
+from workbench.verdict import together
 
 
 @dataclass(frozen=True)
@@ -18,22 +19,28 @@ class Alternative:
     chosen: list
     """Standings over that part of the conditions."""
     gain: float | None
-    """Least detection of the first chosen, less that of the method chosen from all, over that part."""
+    """Least detection of the first chosen, less that of a method chosen from all that loses there."""
     present: object
-    """Standing of the method chosen from all over that part; None where none was."""
+    """Standing over that part of a method that is chosen from all but not there; None where none was chosen."""
 
 
 def alternatives(study, conditions, tables, decision):
     """[Alternative] that lead to another choice, the largest gain in detection first."""
     found = []
     for factor, level, without, some in parts(study, conditions):
-        standings = restricted(study, some, tables)
+        standings = restricted(study, some, decision.standings)
         status, chosen = choice(study, standings, tables)
-        if status not in (Status.CHOSEN, Status.TIE) or {one.name for one in chosen} & set(decision.chosen):
+        names = {one.name for one in chosen}
+        if status not in (Status.CHOSEN, Status.TIE) or not is_another(names, set(decision.chosen)):
             continue
-        present = next((one for one in standings if one.name in decision.chosen), None)
+        present = next((one for one in standings if one.name in set(decision.chosen) - names), None)
         found.append(Alternative(factor, level, without, status, chosen, gain(chosen[0], present), present))
     return sorted(found, key=lambda one: -(one.gain or 0.0))
+
+
+def is_another(chosen, before):
+    """Whether methods chosen under part of the conditions are another choice than those before: some of them lose."""
+    return bool(before - chosen) if before else True
 
 
 def parts(study, conditions):
@@ -48,12 +55,20 @@ def parts(study, conditions):
                 yield factor, level, True, [one for one in conditions if one.levels[factor] != level]
 
 
-def restricted(study, conditions, tables):
+def restricted(study, conditions, standings):
     """[Standing] of all methods over some of the conditions."""
     numbers = {one.number for one in conditions}
-    rates = tables.rates[tables.rates["condition"].isin(numbers)]
     answers = answering(study, conditions)
-    return [standing(study, judge, answers[judge.name], rates) for judge in study.judges]
+    return [narrowed(one, numbers, answers[one.name]) for one in standings]
+
+
+def narrowed(one, numbers, answers):
+    """A Standing over the conditions of the given numbers."""
+    errors = one.errors[one.errors["condition"].isin(numbers)]
+    detections = one.detections[one.detections["condition"].isin(numbers)]
+    size = None if errors.empty else together(errors["verdict"])
+    power = None if one.power is None or detections.empty else together(detections["verdict"])
+    return replace(one, answers=answers, size=size, power=power, errors=errors, detections=detections)
 
 
 def gain(one, present):

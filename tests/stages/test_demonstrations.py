@@ -1,5 +1,6 @@
 """The experiments that ship give the results that ship, and those that were published."""
 
+import re
 from pathlib import Path
 
 import numpy as np
@@ -9,6 +10,7 @@ import pytest
 from workbench import run
 from workbench.cores import default_workers
 from workbench.decide import Status
+from workbench.report.page import Report
 from workbench.study import read
 
 ROOT = Path(__file__).parents[2]
@@ -17,11 +19,13 @@ FROM_COUNTS = ["rate", "mcse", "lower", "upper", "difference", "rate_if_undefine
 ALLOWED = 3
 """Another processor may round a p-value the other way and so move single counts."""
 
+TABLES = ["table.csv", "differences.csv", "branches.csv", "calibration.csv"]
 
-def compared(name, directory):
-    """Compare one table with the one that is committed: names and truths exactly, counts within ALLOWED."""
-    committed = pd.read_csv(ROOT / "results" / "lap_shear" / name, keep_default_na=False)
-    found = pd.read_csv(directory / name, keep_default_na=False)
+
+def compared(table, directory, kept):
+    """Compare a table with the one that is committed: names and truths exactly, counts within ALLOWED."""
+    committed = pd.read_csv(kept / table, keep_default_na=False)
+    found = pd.read_csv(directory / table, keep_default_na=False)
     assert list(found.columns) == list(committed.columns) and len(found) == len(committed)
     for column in committed.columns:
         if column in COUNTS:
@@ -32,13 +36,30 @@ def compared(name, directory):
             assert found[column].equals(committed[column]), column
 
 
+def words_of(report):
+    """What a report says, without its drawings and the versions of libraries."""
+    told = re.sub(
+        r"<svg.*?</svg>|<dt>Versions</dt><dd>.*?</dd>|<style>.*?</style>", "", report, flags=re.DOTALL
+    )
+    return re.sub(r"<[^>]*>", " ", told)
+
+
 @pytest.mark.heavy
-def test_the_demonstration_gives_the_committed_tables(tmp_path):
-    outcome = run.run(read(ROOT / "experiments" / "lap_shear.toml"), tmp_path, default_workers())
-    for name in ("table.csv", "differences.csv", "branches.csv"):
-        compared(name, tmp_path)
-    assert outcome.decision.status in (Status.CHOSEN, Status.TIE)
-    assert not outcome.agreement.disagreeing and outcome.agreement.rows == 12
+@pytest.mark.parametrize(
+    "name, statuses, known",
+    [("lap_shear", (Status.CHOSEN, Status.TIE), 12), ("soil_nitrate", (Status.CHOSEN,), 24)],
+)
+def test_a_demonstration_gives_the_committed_tables_and_report(name, statuses, known, tmp_path):
+    outcome = run.run(read(ROOT / "experiments" / f"{name}.toml"), tmp_path, default_workers())
+    for table in TABLES:
+        compared(table, tmp_path, ROOT / "results" / name)
+    assert outcome.decision.status in statuses
+    assert not outcome.agreement.disagreeing and outcome.agreement.rows == known
+    kept = ROOT / "results" / name
+    if (tmp_path / "table.csv").read_bytes() == (kept / "table.csv").read_bytes():
+        assert words_of(Report(outcome).html()) == words_of(
+            (kept / "report.html").read_text(encoding="utf-8")
+        )
 
 
 PUBLISHED = """\

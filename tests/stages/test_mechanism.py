@@ -167,3 +167,8 @@ def test_identical_groups_are_equal_as_recorded_even_without_the_quantity_compar
         shapes, ESTIMANDS.make("geometric means"), "multiplicative", 0.1, (5, 5), spreads, (Round(to=1.0),)
     )
     assert equal_as_recorded(Condition(1, {}, setting, (1.0, 1.0), "null"), "geometric means")
+
+
+def test_rounding_makes_no_geometric_mean_where_there_was_none():
+    assert Additive(NORMAL, 18.0, 2.0).quantities["geometric_mean"] is None
+    assert Rounded(Additive(NORMAL, 18.0, 2.0), 0.1).quantities["geometric_mean"] is None

@@ -119,5 +119,5 @@ class Rounded(Population):
 
     @property
     def above_zero(self):
-        """Whether values of 0 or less are as good as impossible."""
-        return bool(self.cumulative(0.0) <= NEGLIGIBLE)
+        """Whether values of 0 or less cannot occur before rounding, and are as good as impossible after it."""
+        return bool(self.of.quantile(0.0) >= 0 and self.cumulative(0.0) <= NEGLIGIBLE)

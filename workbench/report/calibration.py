@@ -74,7 +74,7 @@ def title(book, curves):
     """Whether the leading method would hold at other levels: not at the first that breaks it, open, or at all."""
     method, label = book.lead.name, book.called(book.lead.name)
     undefined = (book.lead.errors["undefined"] / book.lead.errors["replications"]).max()
-    if book.lead.size is None or book.lead.size.value == "fails" or undefined > CURIOSITY:
+    if book.lead.size is None or book.lead.size.value != "meets" or undefined > CURIOSITY:
         return book.findings.rates_at_other_levels()
     still_open = []
     for level in (level for level in OTHER if level != book.level):

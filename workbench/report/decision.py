@@ -71,16 +71,17 @@ def costs(book):
         return [findings.no_cost_without_choice()]
     if not lead.eligible:
         return [findings.cost_open()]
+    if not book.targets:
+        return [findings.cost_unknown()]
     if not rivalled(book):
         found.append(findings.no_rival_to_lose_to(book.called(lead.name)))
     else:
         worst = most(given_up(book, lead))
         if worst.value > 0:
-            amount = shown.points(worst.value, worst.mcse)
+            amount, kept = shown.points(worst.value, worst.mcse), book.standings[worst.rival].eligible
+            rival = book.called(worst.rival)
             found.append(
-                findings.costs(
-                    book.called(lead.name), amount, book.at(worst.condition), book.called(worst.rival)
-                )
+                findings.costs(book.called(lead.name), amount, book.at(worst.condition), rival, kept)
             )
         else:
             found.append(findings.costs_nothing(book.called(lead.name)))
@@ -108,7 +109,7 @@ def changes(book):
         return [change(book, one) for one in first]
     if not book.varied:
         return [book.findings.nothing_varied()]
-    return [book.findings.no_part_changes(book.has_choice)]
+    return [book.findings.no_part_changes(bool(book.decision.chosen))]
 
 
 def change(book, one):

@@ -3,15 +3,17 @@
 import io
 import unicodedata
 import warnings
+from functools import lru_cache
 from html import escape
 from typing import NamedTuple
 
 import numpy as np
 from matplotlib.backends.backend_agg import FigureCanvasAgg
 from matplotlib.figure import Figure
+from matplotlib.font_manager import FontProperties
 from matplotlib.patches import Circle, PathPatch
 from matplotlib.path import Path
-from matplotlib.text import Text
+from matplotlib.textpath import TextPath
 
 from workbench.texts import bare
 
@@ -150,9 +152,10 @@ def number(value):
 
 
 def inline(drawing):
-    """The SVG element of a drawing for a page, coloured by the page's variables."""
-    head = f'<svg viewBox="0 0 {number(drawing.width)} {number(drawing.height)}" role="img"'
-    return f'{head} aria-label="{escape(bare(drawing.label))}">{body(drawing, variable)}</svg>'
+    """The SVG element of a drawing for a page, in the page's colours; hidden from readers where it says nothing."""
+    told = f'role="img" aria-label="{escape(bare(drawing.label))}"' if drawing.label else 'aria-hidden="true"'
+    head = f'<svg viewBox="0 0 {number(drawing.width)} {number(drawing.height)}" {told}>'
+    return f"{head}{body(drawing, variable)}</svg>"
 
 
 def document(drawing, colours, width):
@@ -221,11 +224,11 @@ def painted(drawing, colours, width, dots_per_inch=300):
     figure = Figure(
         (inches, inches * drawing.height / drawing.width), dots_per_inch, facecolor=colours["paper"]
     )
-    for item in drawing.items:
-        figure.add_artist(ARTISTS[type(item)](item, drawing, colours, unit))
     target = io.BytesIO()
     with warnings.catch_warnings():
         warnings.filterwarnings("ignore", "Glyph .* missing")  # letters the font lacks are painted as boxes
+        for item in drawing.items:
+            figure.add_artist(ARTISTS[type(item)](item, drawing, colours, unit))
         FigureCanvasAgg(figure).print_png(
             target, pil_kwargs={"compress_level": 2}, metadata={"Software": None}
         )
@@ -267,20 +270,21 @@ def paint(item, colours, unit):
 
 
 def words_artist(item, drawing, colours, unit):
-    """Words for matplotlib."""
-    x, y = shares(np.array([item.x, item.y]), drawing)
-    return Text(
-        x,
-        y,
-        item.text,
-        color=colours[item.role],
-        fontsize=item.size * unit,
-        fontfamily=PAINTED_FONT,
-        fontweight="bold" if item.bold else "normal",
-        horizontalalignment={"start": "left", "middle": "center", "end": "right"}[item.anchor],
-        verticalalignment="baseline",
-        parse_math=False,
-    )
+    """Words for matplotlib, as outlines: a figure repeats many of them, and outlines are laid out once."""
+    path = letters(item.text, item.bold)
+    width = path.vertices[:, 0].max(initial=0.0) * item.size
+    start = item.x - {"start": 0.0, "middle": width / 2, "end": width}[item.anchor]
+    vertices = path.vertices * (item.size, -item.size) + (start, item.y)
+    return PathPatch(Path(shares(vertices, drawing), path.codes), facecolor=colours[item.role], linewidth=0)
+
+
+@lru_cache(maxsize=4096)
+def letters(text, bold):
+    """The outlines of a text in type of size 1, y pointing up."""
+    if not text.strip():
+        return Path(np.empty((0, 2)))
+    font = FontProperties(family=PAINTED_FONT, weight="bold" if bold else "normal")
+    return TextPath((0, 0), text.replace("$", r"\$"), size=1, prop=font)
 
 
 ARTISTS = {Outline: outline_artist, Disc: disc_artist, Words: words_artist}

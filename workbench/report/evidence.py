@@ -1,12 +1,18 @@
 """Smaller pieces of evidence: hypotheses, theory, undefined results, ends of routes."""
 
+import numpy as np
+
 from workbench import texts
 from workbench.grid import HYPOTHESES, holds_as_recorded, recorded_quantities
+from workbench.measures.rate import clopper_pearson
 from workbench.numbers import decimals
 from workbench.report import shown
 from workbench.theory.exact import distances
 
 ALL_HYPOTHESES = (*HYPOTHESES, "distributions", "stochastic size")
+
+POINTWISE = 0.05
+"""Error of the interval by which an end's worst condition is found."""
 
 MOST_ROWS = 12
 """Rows of a small table; the annex has all of them."""
@@ -140,9 +146,12 @@ def branches(book):
 
 
 def worst_within(rows):
-    """The row of the largest error within an end; None where no dataset came there."""
+    """The row of the error within an end that is shown to be largest; None where no dataset came there."""
     taken = rows[rows["taken"] > 0]
-    return None if taken.empty else taken.loc[taken["rate_within"].idxmax()]
+    if taken.empty:
+        return None
+    lower, _ = clopper_pearson(taken["rejections"], taken["taken"], POINTWISE)
+    return taken.assign(lower=lower).iloc[int(np.argmax(lower))]
 
 
 def branch(book, method, end, rows, worst, digits):
@@ -156,22 +165,22 @@ def branch(book, method, end, rows, worst, digits):
         "within": None,
         "mcse": None,
         "place": None,
-        "worst": 0.0,
+        "shown": 0.0,
     }
     if worst is None:
         return found
     return found | {
-        "within": shown.rate(worst["rate_within"], digits),
+        "within": shown.rate(worst["rate_within"], digits, worst["rejections"], worst["taken"]),
         "mcse": shown.Shown(worst["mcse_within"], f"{worst['mcse_within']:.{digits + 1}f}"),
         "place": book.name(book.conditions[worst["condition"]]),
-        "worst": float(worst["rate_within"]),
+        "shown": float(worst["lower"]),
     }
 
 
 def branch_title(book, route, ends):
     """Whether the data that lead to some end make the test there err more often than the limit."""
-    worst = max(ends, key=lambda one: one["worst"])
-    if worst["worst"] > book.band[1]:
+    worst = max(ends, key=lambda one: one["shown"])
+    if worst["shown"] > book.band[1]:
         return book.findings.end_errs(
             book.called(route), worst["method"], worst["within"], f"{book.band[1]:g}"
         )

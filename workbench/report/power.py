@@ -102,22 +102,25 @@ def target(book, series):
 
 
 def title(book, series, nulls):
-    """The smallest difference that the leading method finds as often as asked for in every setting, if any."""
+    """The smallest difference from which on the leading method finds all as often as asked for in every setting."""
     criterion, lead = book.study.criteria.power, book.lead.name
     if criterion is None:
         return book.findings.power_curves(len(nulls))
     keys = {one.setting.key for one in nulls}
-    for name in list(series.sizes)[1:]:
+    found = None
+    for name in reversed(list(series.sizes)[1:]):
         rows = [
             book.rows[one.number, lead]
             for one in book.outcome.conditions
             if one.levels["difference"] == name and one.setting.key in keys
         ]
-        if all(row.lower >= criterion.least for row in rows):
-            return book.findings.found_from(
-                book.called(lead), f"{criterion.least:g}", size_text(book, series.sizes[name])
-            )
-    return book.findings.never_found(book.called(lead), f"{criterion.least:g}")
+        if not all(row.lower >= criterion.least for row in rows):
+            break
+        found = name
+    if found is None:
+        return book.findings.never_found(book.called(lead), f"{criterion.least:g}")
+    size = size_text(book, series.sizes[found])
+    return book.findings.found_from(book.called(lead), f"{criterion.least:g}", size)
 
 
 def size_text(book, size):

@@ -10,6 +10,9 @@ from workbench.report.figure import Sheet
 MOST_PAINTED = 40
 """Rows of a map for papers; the page has all of them."""
 
+LEFT, TOP, CELL, LINE = 220, 36, 92, 24
+"""Measures of a map for papers."""
+
 
 def error_map(book):
     """What the map of error rates shows; None without null conditions."""
@@ -58,7 +61,7 @@ def grouped(book, conditions, cell):
         key = [condition.levels[factor] for factor in first]
         if not groups or groups[-1]["key"] != key:
             groups.append(
-                {"key": key, "name": ", ".join(map(texts.cleaned, key)), "rows": [], "factor": first}
+                {"key": key, "name": ", ".join(map(texts.shortened, key)), "rows": [], "factor": first}
             )
             groups[-1]["sizes"] = condition.setting.sizes if first == ["sizes"] else None
             last = None
@@ -88,47 +91,40 @@ def error_cell(book, condition, name):
 
 def painted_map(book):
     """The map as a Drawing for papers."""
-    rows = book.deciding(book.nulls, MOST_PAINTED)
-    standings = book.decision.standings
-    cell, left, line, top = 84, 210, 24, 44
+    rows, standings = book.deciding(book.nulls, MOST_PAINTED), book.decision.standings
     label = book.words.map_panel(map_title(book), len(rows))
-    drawing = Drawing(left + cell * len(standings), top + line * len(rows) + 8, label)
+    foot = TOP + LINE * len(rows)
+    drawing = Drawing(max(LEFT + CELL * len(standings), 480), foot + 32, label)
     for place, one in enumerate(standings):
-        x, bold = left + cell * (place + 0.5), one.name in book.decision.chosen
-        drawing.text(
-            x,
-            top - 20 if not one.answers else top - 8,
-            fitted(book.label(one.name), cell - 2, 10),
-            "ink",
-            10,
-            "middle",
-            bold,
-        )
-        if not one.answers:
-            drawing.text(x, top - 7, book.words.other_question(), "ink2", 9, "middle")
+        painted_head(book, drawing, one, LEFT + CELL * (place + 0.5))
     for place, condition in enumerate(rows):
-        y = top + line * place
-        drawing.text(
-            left - 8,
-            y + 15,
-            fitted(f"{condition.number}  {book.name(condition)}", left - 10, 10),
-            "ink",
-            10,
-            "end",
-        )
+        y = TOP + LINE * place
+        name = fitted(f"{condition.number}  {book.name(condition)}", LEFT - 10, 10)
+        drawing.text(LEFT - 8, y + 15, name, "ink", 10, "end")
         for column, one in enumerate(standings):
-            painted_cell(
-                book, drawing, condition, one.name, left + cell * column + 1, y + 1, cell - 2, line - 2
-            )
+            painted_cell(book, drawing, condition, one.name, LEFT + CELL * column + 1, y + 1)
+    for place, verdict in enumerate(("meets", "high", "low", "open")):
+        x = 8 + 120 * place
+        mark_in(drawing, verdict, x, foot + 20, "ink", "paper")
+        drawing.text(x + 9, foot + 24, book.words.verdict(verdict), "ink", 10)
     return drawing
 
 
-def painted_cell(book, drawing, condition, name, x, y, width, height):
+def painted_head(book, drawing, standing, x):
+    """The name of a method above its column."""
+    label = book.label(standing.name)
+    name = label if fitted(label, CELL - 2, 10) == label else book.short(standing.name)
+    drawing.text(x, TOP - 20, name, "ink", 10, "middle", standing.name in book.decision.chosen)
+    if not standing.answers:
+        drawing.text(x, TOP - 7, book.words.other_question(), "ink2", 9, "middle")
+
+
+def painted_cell(book, drawing, condition, name, x, y):
     """One cell of the map for papers."""
     found = error_cell(book, condition, name)
     ink, verdict = f"t{found['step']}", found["verdict"]
-    drawing.box(x, y, width, height, f"s{found['step']}")
-    middle = y + height / 2
+    drawing.box(x, y, CELL - 2, LINE - 2, f"s{found['step']}")
+    middle = y + LINE / 2 - 1
     mark_in(drawing, verdict, x + 16, middle, ink, f"s{found['step']}")
     drawing.text(x + 27, middle + 4, found["text"], ink, 11, bold=verdict in ("high", "low"))
 
@@ -176,11 +172,11 @@ def detection_title(book):
     least = book.detection(lead.least["condition"], lead.name)
     label, place = book.called(lead.name), book.at(book.conditions[lead.least["condition"]])
     if criterion is None:
-        return findings.finds_at_least(label, least, place)
+        return findings.finds_at_least(label, least, place, len(book.targets))
     asked = f"{criterion.least:g}"
     if lead.power.value == "meets":
-        return findings.finds_as_asked(label, least, asked)
+        return findings.finds_as_asked(label, least, asked, len(book.targets))
     number = sum(book.verdict(one.number, lead.name) == "low" for one in book.targets)
     if number:
         return findings.finds_too_little(label, least, asked, number, len(book.targets))
-    return findings.finds_perhaps(label, least, asked)
+    return findings.finds_perhaps(label, least, asked, len(book.targets))

@@ -72,7 +72,10 @@ def signed_span(lower, upper, digits):
 def points(value, standard_error):
     """A difference of two shares in percentage points, for a sentence."""
     digits = max(0, decimals(standard_error) - 2)
-    return Shown(value, f"{100 * value:.{digits}f}".replace("-", MINUS))
+    text = f"{100 * value:.{digits}f}"
+    if value > 0 and not float(text):
+        text = f"<\u00a0{10.0**-digits:.{digits}f}"
+    return Shown(value, text.replace("-", MINUS))
 
 
 def count(number):
