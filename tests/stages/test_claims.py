@@ -101,16 +101,16 @@ def test_one_kind_of_data_is_not_counted_like_many(told):
 
 def test_a_cost_too_small_for_its_digits_is_below_the_last_of_them():
     assert (
-        shown.points(0.0003, 0.003).text == "<\u00a01" and shown.points(0.0003, 0.0005).text == "<\u00a00.1"
+        shown.points(0.0003, 0.03).text == "<\u00a01" and shown.points(0.0003, 0.0005).text == "<\u00a00.1"
     )
     assert shown.points(0.0123, 0.0005).text == "1.2"
 
 
 @pytest.mark.parametrize("spreads", [("even",), ("even", "rising")])
 def test_at_least_is_said_of_several_conditions_only(told, spreads):
-    book = told(welch_f=finds(0.85), sop=BREAKS, spreads=spreads)
+    book = told(welch_f=finds(0.85), sop={"none": 0.09}, spreads=spreads)
     assert ("at least" in rates.detection_title(book)) == (len(spreads) > 1)
-    unsettled = told(welch_f=finds(0.802), sop=BREAKS, spreads=spreads)
+    unsettled = told(welch_f=finds(0.802), sop={"none": 0.09}, spreads=spreads)
     assert ("everywhere" in rates.detection_title(unsettled)) == (len(spreads) > 1)
 
 
