@@ -25,6 +25,14 @@ def cleaned(text):
     return " ".join("".join(kept).split(" ")).strip()
 
 
+def printable(text):
+    """A text of several lines with a mark in the place of every character that a page cannot hold."""
+    return "".join(
+        "\ufffd" if unicodedata.category(letter) in CONTROLS and letter not in "\n\t" else letter
+        for letter in text
+    )
+
+
 def shortened(text, most=LONGEST):
     """A cleaned text of at most so many letters."""
     found = cleaned(text)

@@ -155,3 +155,12 @@ def test_texts_of_users_lose_what_cannot_be_seen_and_nothing_else():
 def test_prose_is_escaped_and_isolates_users_texts():
     told = shown.prose(f"Use {texts.isolated('<b>')} & go")
     assert told == 'Use <bdi class="q">&lt;b&gt;</bdi> &amp; go'
+
+
+def test_true_quantities_have_the_digits_of_their_spread_and_no_false_ones():
+    group = {"mean": 18.0, "sd": 2.0, "skewness": 7.8e-15, "excess_kurtosis": -5.3e-8, "median": -0.001}
+    names = ("mean", "median", "sd", "skewness", "excess_kurtosis")
+    assert shown.quantities(group, names) == ["18.00", "0.00", "2.00", "0.00", "0.00"]
+    wide = {"mean": 1234567.8, "sd": 4321.0, "skewness": None}
+    assert shown.quantities(wide, ("mean", "sd", "skewness")) == ["1,234,568", "4,321", "–"]
+    assert shown.quantities({"mean": -0.0123, "sd": None}, ("mean", "sd")) == ["\u22120.01", "–"]

@@ -1,5 +1,6 @@
 """Annexes: every number, every condition, what was not examined, how to repeat it, references."""
 
+from itertools import groupby
 from pathlib import Path
 
 from workbench import texts
@@ -17,21 +18,23 @@ A_TABLE = 6
 
 
 def every_number(book):
-    """[(condition, name, [row])]: all rows of the table, by condition."""
+    """[[(condition, name, [row])]]: the rows of the table, by condition."""
     digits = {"error": book.error_digits, "detection": book.detection_digits}
+    rates = book.outcome.tables.rates
     found = []
-    for number, rows in book.outcome.tables.rates.groupby("condition", sort=True):
-        condition = book.conditions[number]
-        cells = [rate_row(book, row, digits[row.reading]) for row in rows.itertuples()]
-        found.append(
-            {
-                "number": number,
-                "name": book.name(condition, difference=True),
-                "reading": rows["reading"].iloc[0],
-                "rows": cells,
-            }
-        )
+    for condition, rows in by_condition(book, rates):
+        told = {"number": condition.number, "name": book.name(condition, difference=True)}
+        cells = [rate_row(book, row, digits[row.reading]) for row in rows]
+        found.append(told | {"reading": rows[0].reading, "rows": cells})
     return slices(found)
+
+
+def by_condition(book, table):
+    """(condition, [row]) of a table for each condition that is listed, in the order of the file."""
+    listed = {one.number: one for one in book.listed(book.outcome.conditions)}
+    here = table[table["condition"].isin(list(listed))]
+    for number, rows in groupby(here.itertuples(), key=lambda row: row.condition):
+        yield listed[number], list(rows)
 
 
 def slices(conditions):
@@ -56,19 +59,13 @@ def rate_row(book, row, digits):
 
 
 def every_difference(book):
-    """[(condition, name, [row])]: all paired differences at the first level, by condition."""
+    """[[(condition, name, [row])]]: the paired differences at the first level, by condition."""
     table = book.outcome.tables.differences
     found = []
-    for number, rows in table[table["alpha"] == book.level].groupby("condition", sort=True):
-        condition = book.conditions[number]
+    for condition, rows in by_condition(book, table[table["alpha"] == book.level]):
         digits = book.error_digits if condition.is_null else book.detection_digits
-        found.append(
-            {
-                "number": number,
-                "name": book.name(condition, difference=True),
-                "rows": [difference_row(book, row, digits) for row in rows.itertuples()],
-            }
-        )
+        told = {"number": condition.number, "name": book.name(condition, difference=True)}
+        found.append(told | {"rows": [difference_row(book, row, digits) for row in rows]})
     return slices(found)
 
 
@@ -92,7 +89,7 @@ def settings(book):
         for factor, levels in book.study.factors.levels.items()
     ]
     populations = {}
-    for condition in book.outcome.conditions:
+    for condition in book.listed(book.outcome.conditions):
         setting = condition.setting
         kind = setting.shapes, setting.spreads, setting.disturbances, condition.difference
         populations.setdefault(kind, []).append(condition)
@@ -125,10 +122,7 @@ def population(book, some):
         "name": book.name(condition, factors, difference=True),
         "holds": holds_as_recorded(condition),
         "equal": equal_as_recorded(condition, book.study.question.compare),
-        "groups": [
-            [shown.quantity(group[name]) for name in QUANTITIES]
-            for group in recorded_quantities(condition)[:20]
-        ],
+        "groups": [shown.quantities(group, QUANTITIES) for group in recorded_quantities(condition)[:20]],
     }
 
 
@@ -171,7 +165,7 @@ def repeat(book):
     found = manifest(book.outcome)
     return found | {
         "stem": Path(book.study.file).stem,
-        "text": book.study.text,
+        "text": texts.printable(book.study.text.replace("\r\n", "\n")),
         "title": texts.cleaned(book.study.title),
     }
 

@@ -6,6 +6,8 @@ from dataclasses import dataclass
 import numpy as np
 from matplotlib.ticker import MaxNLocator
 
+from workbench.report.drawing import fitted
+
 MINUS = "\u2212"
 
 
@@ -61,7 +63,9 @@ def bottom_axis(drawing, axis, y, name, ticks=None, shown=plain):
     drawing.lines([[(axis(value), y), (axis(value), y + 4)] for value in ticks], "edge")
     for value in ticks:
         drawing.text(axis(value), y + 15, shown(value), size=9.5, anchor="middle")
-    drawing.text((axis.start + axis.stop) / 2, y + 30, name, size=10.5, anchor="middle")
+    middle = (axis.start + axis.stop) / 2
+    room = 2 * min(middle, drawing.width - middle)
+    drawing.text(middle, y + 30, fitted(name, room, 10.5), size=10.5, anchor="middle")
 
 
 def left_axis(drawing, axis, x, ticks=None, shown=plain):

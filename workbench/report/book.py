@@ -14,6 +14,9 @@ from workbench.words import phrases
 MOST_PANELS = 12
 """A figure has at most so many panels."""
 
+MOST_LISTED = 1000
+"""A table for each condition has at most so many; the CSV files have all."""
+
 NAME_LENGTH = 48
 """Letters of a level's name in a table; the annex of conditions has all of them."""
 
@@ -152,8 +155,13 @@ class Book:
 
     def label(self, method):
         """A method's name as a heading."""
-        label = texts.bare(self.called(method))
-        return label[:1].upper() + label[1:]
+        return self.labels[method]
+
+    @cached_property
+    def labels(self):
+        """{method: its name as a heading}."""
+        names = {judge.name: texts.bare(self.called(judge.name)) for judge in self.study.judges}
+        return {method: name[:1].upper() + name[1:] for method, name in names.items()}
 
     def called(self, method):
         """A method's name within a sentence."""
@@ -165,7 +173,7 @@ class Book:
 
     def short(self, method):
         """A method's name where space is short."""
-        return fitted(texts.cleaned(self.study.judge(method).short), 52, 10)
+        return fitted(texts.cleaned(self.study.judge(method).short), 50, 10.5)
 
     def verdict(self, condition, method):
         """meets, high, low, open, or nothing where no criterion applies."""
@@ -232,6 +240,10 @@ class Book:
         if len(conditions) <= most:
             return list(conditions)
         return self.telling(conditions)[:most]
+
+    def listed(self, conditions):
+        """The conditions that tables list, in the file's order: all, or the most telling ones of very many."""
+        return sorted(self.deciding(conditions, MOST_LISTED), key=lambda one: one.number)
 
     def telling(self, conditions):
         """Conditions by how near they bring each method to its limits, the methods taking turns."""

@@ -8,7 +8,7 @@ from workbench.report.drawing import Drawing
 from workbench.report.figure import Sheet, numbered_panels
 from workbench.sentences import CURIOSITY
 
-WIDTH, HEIGHT, LEFT, RIGHT, TOP, FOOT = 288, 236, 44, 216, 8, 40
+WIDTH, HEIGHT, LEFT, RIGHT, TOP, FOOT = 288, 236, 50, 214, 8, 40
 
 LEVELS = (0.005, 0.01, 0.02, 0.05, 0.1)
 """Levels that the axis shows."""

@@ -10,7 +10,7 @@ from typing import NamedTuple
 import numpy as np
 from matplotlib.backends.backend_agg import FigureCanvasAgg
 from matplotlib.figure import Figure
-from matplotlib.font_manager import FontProperties
+from matplotlib.font_manager import FontProperties, findfont, get_font
 from matplotlib.patches import Circle, PathPatch
 from matplotlib.path import Path
 from matplotlib.textpath import TextPath
@@ -21,9 +21,6 @@ FONT = "system-ui, -apple-system, 'Segoe UI', Roboto, 'Noto Sans', 'Liberation S
 
 PAINTED_FONT = "DejaVu Sans"
 """Comes with matplotlib, so a painted figure is the same on every machine."""
-
-NARROW, COMMON, CAPITAL, FULL = 0.34, 0.58, 0.74, 1.0
-"""Widths of letters as parts of the size of type, a little more than those of common fonts."""
 
 
 class Outline(NamedTuple):
@@ -128,22 +125,27 @@ def moved(item, x, y):
 
 
 def fitted(text, width, size):
-    """A text cut so that it is at most about `width` wide in type of the given size."""
-    room = width / size
-    for place, letter in enumerate(text):
-        room -= width_of(letter)
-        if room < 0:
-            return text[: max(place - 1, 1)].rstrip() + "…"
-    return text
+    """A text cut so that it is at most `width` wide in type of the given size."""
+    widths = [size * width_of(letter) for letter in text]
+    if sum(widths) <= width:
+        return text
+    room, kept = width - size * width_of("…"), 0
+    while kept < len(text) and room >= widths[kept]:
+        room -= widths[kept]
+        kept += 1
+    return text[: max(kept, 1)].rstrip() + "…"
 
 
+@lru_cache(maxsize=4096)
 def width_of(letter):
-    """About how wide a letter is, as a part of the size of type."""
-    if unicodedata.east_asian_width(letter) in "WF" or letter in "MWmw@%":
-        return FULL
-    if letter in " .,:;|!'ijlft()[]":
-        return NARROW
-    return CAPITAL if letter.isupper() else COMMON
+    """How wide a letter is, as a part of the size of type: that of a wide font, as others are narrower."""
+    if unicodedata.east_asian_width(letter) in "WF":
+        return 1.0
+    font = get_font(findfont(FontProperties(family=PAINTED_FONT)))
+    if not font.get_char_index(ord(letter)):
+        return 1.0
+    font.set_size(100, 72)
+    return font.load_char(ord(letter)).linearHoriAdvance / 65536 / 100
 
 
 def number(value):

@@ -142,6 +142,8 @@ class Report:
             "scale": study.question.scale,
             "lead": book.label(book.lead.name),
             "large": len(book.conditions) > LARGE,
+            "all": len(book.conditions),
+            "listed": len(book.listed(self.outcome.conditions)),
             "few": study.simulation.replications < FEW,
             "asked": asked(book),
             "decision": decision(book),

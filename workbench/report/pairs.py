@@ -5,7 +5,7 @@ from workbench.report.axes import Axis, bottom_axis, plain
 from workbench.report.drawing import Drawing, fitted
 from workbench.report.figure import Sheet
 
-WIDTH, LEFT, RIGHT, TOP, ROW, FOOT = 288, 8, 280, 22, 25, 42
+WIDTH, LEFT, RIGHT, TOP, ROW, FOOT = 288, 20, 268, 22, 25, 42
 
 MOST_ROWS = 12
 """Conditions of a panel; the most telling ones where there are more."""
@@ -89,10 +89,10 @@ def with_sign(value):
 def row(book, drawing, axis, y, condition, rival):
     """One condition's difference, with its interval and the rival's mark."""
     tie = min(book.study.criteria.tie, axis.high)
-    drawing.box(axis(-tie), y - 6, axis(tie) - axis(-tie), 13, "tint")
-    drawing.line([(axis(0), y - 6), (axis(0), y + 7)], "ink", 1.1)
+    drawing.box(axis(-tie), y - 4, axis(tie) - axis(-tie), 11, "tint")
+    drawing.line([(axis(0), y - 4), (axis(0), y + 7)], "ink", 1.1)
     value, _, low, high = book.pairs[condition.number, book.lead.name, rival]
-    drawing.text(LEFT, y - 7, fitted(book.name(condition), RIGHT - LEFT, 9.5), "ink", 9.5)
+    drawing.text(2, y - 7, fitted(book.name(condition), WIDTH - 4, 9.5), "ink", 9.5)
     drawing.line([(axis(low), y), (axis(high), y)], "ink2", 1.3)
     hollow = not book.keeps_error(condition, rival)
     if rival in book.drawn:

@@ -249,7 +249,7 @@ def group_name(drawing, book, condition, group, base, left):
 def panel_label(book, condition):
     """What a reader who cannot see the panel is told."""
     true = recorded_quantities(condition)
-    told = {name: [shown.quantity(group[name]) for group in true] for name in ("mean", "median", "sd")}
+    told = {name: [shown.quantities(group, [name])[0] for group in true] for name in ("mean", "median", "sd")}
     return book.words.population_panel(
         kind_name(book, condition), texts.cleaned(book.study.question.unit), told
     )

@@ -22,7 +22,9 @@ def error_map(book):
     return {
         "sheet": sheet,
         "methods": heads(book),
-        "groups": grouped(book, book.nulls, lambda condition, name: error_cell(book, condition, name)),
+        "groups": grouped(
+            book, book.listed(book.nulls), lambda condition, name: error_cell(book, condition, name)
+        ),
         "legend": [(k, proportion(centre(k, book.level), max(3, book.error_digits))) for k in STEPS],
         "level": f"{book.level:g}",
         "compare": book.study.question.compare,
@@ -148,7 +150,9 @@ def detections(book):
     return {
         "title": detection_title(book),
         "methods": heads(book),
-        "groups": grouped(book, book.targets, lambda condition, name: detection_cell(book, condition, name)),
+        "groups": grouped(
+            book, book.listed(book.targets), lambda condition, name: detection_cell(book, condition, name)
+        ),
         "at": criterion.at if criterion else None,
         "least": f"{criterion.least:g}" if criterion else None,
         "several": len(book.target_differences) > 1,

@@ -1,5 +1,6 @@
 """Shown: simulated numbers as a page prints them, each with its full value beside it."""
 
+import math
 from dataclasses import dataclass
 
 from markupsafe import Markup, escape
@@ -83,14 +84,25 @@ def count(number):
     return Shown(number, f"{number:,}")
 
 
-def quantity(value):
-    """A true quantity with four significant digits; a dash where it does not exist."""
+def quantities(group, names):
+    """True quantities of a group as texts, with three digits of its standard deviation; a dash where one is none."""
+    digits = decimals_of(group["sd"])
+    return [
+        true_value(group[name], 2 if name in ("skewness", "excess_kurtosis") else digits) for name in names
+    ]
+
+
+def decimals_of(sd):
+    """Decimals that give a standard deviation three digits; two where there is none."""
+    return 2 if not sd else max(0, 2 - math.floor(math.log10(sd)))
+
+
+def true_value(value, digits):
+    """A true quantity as a text; nought has no sign."""
     if value is None:
         return "–"
-    text = f"{value:.4g}"
-    if "e" not in text and abs(value) >= 1000:
-        text = f"{value:,.0f}"
-    return text.replace("-", MINUS)
+    text = f"{value:,.{digits}f}"
+    return text.replace("-", MINUS) if float(text.replace(",", "")) else f"{0:.{digits}f}"
 
 
 def prose(text):
