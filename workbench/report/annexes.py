@@ -45,7 +45,7 @@ def slices(conditions):
 def rate_row(book, row, digits):
     """One row of the table."""
     return {
-        "label": book.label(row.method),
+        "label": book.cell_label(row.method),
         "chosen": row.method in book.decision.chosen,
         "alpha": f"{row.alpha:g}",
         "rejections": f"{row.rejections:,}",
@@ -72,8 +72,8 @@ def every_difference(book):
 def difference_row(book, row, digits):
     """One row of the paired differences."""
     return {
-        "method": book.label(row.method),
-        "rival": book.label(row.rival),
+        "method": book.cell_label(row.method),
+        "rival": book.cell_label(row.rival),
         "only_method": f"{row.only_method:,}",
         "only_rival": f"{row.only_rival:,}",
         "difference": shown.signed(row.difference, digits).text,

@@ -2,6 +2,8 @@
 
 from functools import cached_property
 
+from markupsafe import Markup
+
 from workbench import texts, wording
 from workbench.criteria import Verdict
 from workbench.grid import equal_as_recorded
@@ -156,6 +158,11 @@ class Book:
     def label(self, method):
         """A method's name as a heading."""
         return self.labels[method]
+
+    def cell_label(self, method):
+        """A method's name in one of very many cells: in an element of its own only where a user gave it."""
+        given = not hasattr(self.study.judge(method).method, "label")
+        return Markup("<bdi>{}</bdi>").format(self.labels[method]) if given else self.labels[method]
 
     @cached_property
     def labels(self):
