@@ -10,7 +10,7 @@ FIGURE = re.compile(r"\d\d_\w+\.(svg|png)")
 
 
 def write_documents(outcome):
-    """Write tables, report and figures of an Outcome, each file whole or not at all."""
+    """Write tables, report and figures of an Outcome, each file whole or not at all; the paths of the documents."""
     write(outcome)
     report = Report(outcome)
     write_text(outcome.directory / "report.html", report.html())
@@ -22,6 +22,7 @@ def write_documents(outcome):
     for path in folder.iterdir():
         if FIGURE.fullmatch(path.name) and path.name not in figures:
             path.unlink()
+    return [outcome.directory / "report.html", *(folder / name for name in figures)]
 
 
 def write_report(outcome, path):

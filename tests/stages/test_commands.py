@@ -11,8 +11,11 @@ import pytest
 
 import workbench as wb
 from workbench import cli
+from workbench import run as running
 from workbench.cli.progress import Reporter
+from workbench.errors import WorkbenchError
 from workbench.run import Progress
+from workbench.study import parse
 from workbench.theory import exact
 
 TEXT = """\
@@ -149,6 +152,51 @@ def test_disagreement_with_theory_ends_with_1_and_names_the_row(folder, capsys, 
     assert cli.status_of(cli.workbench, ["run", "x.toml", "--workers", "1", "--quiet"]) == 1
     message = capsys.readouterr().err
     assert "disagree" in message and "condition 1 classical_f" in message
+    report = (folder / "results" / "x" / "report.html").read_text(encoding="utf-8")
+    assert "Simulation and theory disagree in 4 rates, so this report must not be used." in report
+    assert cli.status_of(cli.workbench, ["report", "results/x", "--quiet"]) == 1
+
+
+def test_report_writes_the_documents_again_from_the_ledger(folder, capsys):
+    assert cli.status_of(cli.workbench, ["run", "x.toml", "--quiet"]) == 0
+    place = folder / "results" / "x"
+    before = {
+        path: path.read_bytes()
+        for path in [*place.glob("*.csv"), place / "report.html", *place.glob("figures/*")]
+    }
+    for path in before:
+        path.unlink()
+    capsys.readouterr()
+    status, found = told(capsys, "report", "results/x")
+    assert status == 0 and found["report"] == "results/x/report.html" and len(found["figures"]) >= 6
+    assert {path: path.read_bytes() for path in before} == before
+    assert cli.status_of(cli.workbench, ["report", "results/x"]) == 0
+    assert capsys.readouterr().out == "results/x/report.html\n"
+
+
+def test_report_of_nothing_or_of_half_a_result_writes_nothing(folder, capsys, monkeypatch):
+    (folder / "empty").mkdir()
+    assert cli.status_of(cli.workbench, ["report", "empty"]) == 2
+    assert "there is no ledger here" in capsys.readouterr().err and not list((folder / "empty").iterdir())
+
+    def stop(progress):
+        if progress.done:
+            raise KeyboardInterrupt
+
+    with pytest.raises(KeyboardInterrupt):
+        running.run(parse(TEXT, "x.toml"), folder / "half", 1, stop)
+    assert cli.status_of(cli.workbench, ["report", "half"]) == 3
+    assert "No verdict yet" in capsys.readouterr().err
+    assert [path.name for path in (folder / "half").iterdir()] == ["ledger.sqlite"]
+
+
+def test_a_notebook_writes_its_report_where_it_likes(folder):
+    result = wb.read("x.toml").run(workers=1, replications=400, out="out")
+    assert not (folder / "out" / "report.html").exists()
+    result.report("mine.html")
+    assert (folder / "mine.html").read_text(encoding="utf-8").startswith("<!DOCTYPE html>")
+    with pytest.raises(WorkbenchError, match="cannot be written"):
+        result.report("no/such/folder/mine.html")
 
 
 def test_a_count_is_impossible_only_beyond_five_standard_errors():

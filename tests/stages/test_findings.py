@@ -319,7 +319,7 @@ def test_a_method_that_answers_another_question_is_no_rival(told):
 
 def test_where_the_choice_is_shown_to_find_too_little_its_misses_are_told(told):
     _, found = decision.costs(told(welch_f=finds(0.9, 0.6, 0.7), sop=BREAKS))
-    assert bare(found) == "At worst, in rising, 40.0\u00a0% of studies miss the difference full."
+    assert bare(found) == "At worst, in rising, no more than 60.0\u00a0% of studies find the difference full."
     assert len(decision.costs(told(welch_f=finds(0.9, 0.802, 0.9), sop=BREAKS))) == 1
 
 

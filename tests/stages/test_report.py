@@ -1,5 +1,6 @@
 """The report says what the tables say: every number is found in them, every figure becomes a file."""
 
+import itertools
 import re
 from html.parser import HTMLParser
 
@@ -305,3 +306,41 @@ def test_a_condition_is_named_in_full_once_and_cut_elsewhere(tmp_path):
     report = Report(run.run(parse(text, "x.toml"), tmp_path, 1)).html()
     before, after = report.split("<h3>The file as it was run</h3>")
     assert before.count("a" * 300) == 1 and "a" * 300 in after
+
+
+MANY = """\
+uniform = "uniform"
+laplace = "laplace"
+exponential = "exponential"
+heavy = { family = "student_t", df = 5 }
+"""
+
+
+@pytest.fixture(scope="module")
+def wide(tmp_path_factory):
+    """The report of a study with 18 kinds of data in 108 conditions."""
+    text = TEXT.replace('normal = "normal"\n', 'normal = "normal"\n' + MANY)
+    text = text.replace("equal = [1, 1, 1]\n", "equal = [1, 1, 1]\nrising = [1, 2, 3]\n")
+    text = text.replace("replications = 2000", "replications = 20")
+    return Report(run.run(parse(text, "x.toml"), tmp_path_factory.mktemp("wide"), 1))
+
+
+def test_a_figure_has_at_most_twelve_panels_and_says_how_many_there_are(wide):
+    assert all(len(sheet.panels) <= 12 for sheet in wide.sheets)
+    html = wide.html()
+    first, annex = html.split('id="annex-a"')
+    assert "12 of 18, the others are in annex B" in first and "Shown are the 12 of 36 conditions" in first
+    assert annex.count('<figure class="pop') == 1 and 'id="fig7"' in annex
+    drawn = [
+        title for sheet in wide.sheets if sheet.name.startswith("populations") for title, _ in sheet.panels
+    ]
+    assert len(drawn) == len(set(drawn)) == 18
+
+
+def test_no_heading_skips_a_level(wide):
+    levels = [int(level) for level in re.findall(r"<h([1-6])", wide.html())]
+    assert levels[0] == 1 and all(later <= before + 1 for before, later in itertools.pairwise(levels))
+
+
+def test_few_replications_are_called_exploratory(wide, html):
+    assert "Exploratory: 20 replications" in wide.html() and "Exploratory" not in html

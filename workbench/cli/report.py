@@ -11,15 +11,19 @@ from workbench.run import read_outcome
 
 @click.command("report")
 @options.directory
+@options.as_json
 @options.quiet
-def command(directory, quiet):
+def command(directory, as_json, quiet):
     """Write the tables, report.html and figures/ of the finished result in DIR again, from its ledger.
 
     report.html is one file that opens without a network. Example: workbench report results/lap_shear
     """
     outcome = read_outcome(directory)
-    write_documents(outcome)
-    if not quiet:
-        click.echo(f"{outcome.directory / 'report.html'}")
+    report, *figures = map(str, write_documents(outcome))
+    if as_json:
+        told = {"report": report, "figures": figures, "plan": outcome.study.key}
+        options.print_json(told | {"digest": outcome.tables.digest})
+    elif not quiet:
+        click.echo(report)
     if outcome.agreement.disagreeing:
         raise WorkError(disagreement(outcome.agreement))

@@ -87,12 +87,8 @@ def costs(book):
             found.append(findings.costs_nothing(book.called(lead.name)))
     if lead.power is not None and lead.power.value == "fails":
         criterion, least = book.study.criteria.power, lead.least
-        misses = percent(1 - least["rate"], least["mcse"])
-        found.append(
-            findings.misses(
-                misses, texts.isolated(criterion.at), book.at(book.conditions[least["condition"]])
-            )
-        )
+        found_in, place = percent(least["rate"], least["mcse"]), book.at(book.conditions[least["condition"]])
+        found.append(findings.misses(found_in, texts.isolated(criterion.at), place))
     return found
 
 

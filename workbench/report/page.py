@@ -26,8 +26,8 @@ from workbench.report.shown import prose
 FEW = 1000
 """Below so many replications a report says that it is exploratory."""
 
-LARGE = 100
-"""With more conditions a browser lays out only the tables in view."""
+LARGE = 1500
+"""With more rows in the annexes a browser lays out only the tables in view."""
 
 LONGEST_TITLE = 200
 
@@ -128,6 +128,11 @@ class Report:
         first = [self.parts["populations"], shown, *named]
         return [sheet for sheet in first if sheet is not None] + self.parts["further"]
 
+    @property
+    def rows(self):
+        """How many rows the tables of the first annex have."""
+        return len(self.outcome.tables.rates) + len(self.outcome.tables.differences)
+
     def values(self):
         """Everything the page's templates need."""
         book, study = self.book, self.book.study
@@ -141,7 +146,7 @@ class Report:
             "groups": study.factors.groups,
             "scale": study.question.scale,
             "lead": book.label(book.lead.name),
-            "large": len(book.conditions) > LARGE,
+            "large": self.rows > LARGE,
             "all": len(book.conditions),
             "listed": len(book.listed(self.outcome.conditions)),
             "few": study.simulation.replications < FEW,
