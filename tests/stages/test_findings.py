@@ -154,7 +154,7 @@ def series(outcome, *differences, scale="additive"):
     head, rest = text.split("[vary.difference]\n")
     text = "\n".join([head, "[vary.difference]", *lines, "[methods]" + rest.split("[methods]")[1]])
     found = power.series_of(SimpleNamespace(study=parse(text, "x.toml")))
-    return found and [(name, round(size, 9)) for name, size in found.sizes.items()]
+    return found and [(name, round(size, 9)) for name, size in found.items()]
 
 
 def test_differences_in_one_direction_are_a_series_by_their_size(small_outcome):

@@ -7,7 +7,7 @@ from markupsafe import Markup
 from workbench import texts, wording
 from workbench.criteria import Verdict
 from workbench.grid import equal_as_recorded
-from workbench.look import SLOTS
+from workbench.look import MOST_DRAWN, SLOTS
 from workbench.numbers import decimals
 from workbench.report import shown
 from workbench.report.drawing import fitted
@@ -129,11 +129,6 @@ class Book:
             return 0.0
         return wording.excess(self.study, wording.farthest(self.study, standing.errors))
 
-    @property
-    def has_choice(self):
-        """Whether one method was chosen."""
-        return len(self.decision.chosen) == 1
-
     @cached_property
     def slots(self):
         """{method: Slot} for the first six in the file."""
@@ -144,7 +139,7 @@ class Book:
         """Methods that figures of curves show: at most six, the leading one, its rivals, then the file's order."""
         order = sorted(self.decision.standings, key=lambda one: (not one.possible, not one.counted_in))
         names = [self.lead.name, *(one.name for one in order if one is not self.lead)]
-        chosen = set(names[: len(SLOTS)])
+        chosen = set(names[:MOST_DRAWN])
         return [judge.name for judge in self.study.judges if judge.name in chosen]
 
     def slot(self, method):

@@ -5,7 +5,7 @@ import numpy as np
 from workbench.measures.rate import clopper_pearson
 from workbench.report.axes import Axis, bottom_axis, left_axis, pushed_apart
 from workbench.report.drawing import Drawing
-from workbench.report.figure import Sheet, numbered_panels
+from workbench.report.figure import Sheet
 from workbench.sentences import CURIOSITY
 
 WIDTH, HEIGHT, LEFT, RIGHT, TOP, FOOT = 288, 236, 50, 214, 8, 40
@@ -28,7 +28,7 @@ def calibration(book):
         return None
     curves = Curves(book)
     some = book.deciding(book.nulls)
-    panels = numbered_panels(book, some, lambda one: panel(book, curves, one))
+    panels = [(book.name(one), panel(book, curves, one)) for one in some]
     return Sheet(
         book, "calibration", title(book, curves), panels, most=len(book.nulls), told={"shown": len(some)}
     )

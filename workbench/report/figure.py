@@ -3,7 +3,6 @@
 from dataclasses import dataclass, field
 
 from workbench.look import palette
-from workbench.report.book import MOST_PANELS
 from workbench.report.drawing import Drawing, document, fitted, inline, painted
 
 WIDE = 180
@@ -109,8 +108,3 @@ def swatch(drawing, x, y, slot, leads):
     """A piece of a method's line with its mark."""
     drawing.line([(x, y), (x + 36, y)], slot.role, 2.6 if leads else 1.6, slot.dash)
     drawing.mark(slot.mark, x + 18, y, slot.role, 8)
-
-
-def numbered_panels(book, conditions, draw, names=None):
-    """[(name, Drawing)] of the conditions to be shown."""
-    return [(book.name(one) if names is None else names(one), draw(one)) for one in conditions[:MOST_PANELS]]

@@ -1,7 +1,5 @@
 """Power: detection by the size of a difference, where differences form a series."""
 
-from dataclasses import dataclass
-
 import numpy as np
 
 from workbench import texts
@@ -22,17 +20,12 @@ POINTWISE = 0.05
 """Error of each interval of a curve by itself."""
 
 
-@dataclass(frozen=True)
-class Series:
-    """Differences along one direction, none among them."""
-
-    sizes: dict
-    """{level name: largest difference of two groups, or ratio of two groups on the multiplicative scale}"""
-    direction: tuple
-
-
 def series_of(book):
-    """The Series of a study's differences, the longest direction there is; None where none has three points."""
+    """{level name: size} of a study's differences along one direction, none among them, by size.
+
+    Of several directions the one with most differences; None where none has three points. The size is the largest
+    difference of two groups, or on the multiplicative scale the largest ratio.
+    """
     question, levels = book.study.question, book.study.factors.levels["difference"]
     multiplicative = question.scale == "multiplicative"
     effects = {name: effect(row, multiplicative) for name, row in levels.items()}
@@ -48,7 +41,7 @@ def series_of(book):
     if best is None:
         return None
     sizes = {name: extent(levels[name], multiplicative) for name in (none[0], *best)}
-    return Series(dict(sorted(sizes.items(), key=lambda item: item[1])), tuple(best))
+    return dict(sorted(sizes.items(), key=lambda item: item[1]))
 
 
 def effect(row, multiplicative):
@@ -74,9 +67,9 @@ def power(book):
         return None
     settings = {}
     for condition in book.outcome.conditions:
-        if condition.levels["difference"] in series.sizes:
+        if condition.levels["difference"] in series:
             settings.setdefault(condition.setting.key, {})[condition.levels["difference"]] = condition
-    complete = {key: some for key, some in settings.items() if len(some) == len(series.sizes)}
+    complete = {key: some for key, some in settings.items() if len(some) == len(series)}
     nulls = [
         one for one in book.nulls if one.setting.key in complete and one.number in complete_numbers(complete)
     ]
@@ -86,7 +79,7 @@ def power(book):
     panels = [
         (book.name(one, difference=False), panel(book, series, complete[one.setting.key])) for one in some
     ]
-    told = {"points": len(series.sizes), "at": target(book, series)}
+    told = {"points": len(series), "at": target(book, series)}
     return Sheet(book, "power", title(book, series, nulls), panels, most=len(nulls), told=told)
 
 
@@ -98,7 +91,7 @@ def complete_numbers(complete):
 def target(book, series):
     """The difference of the series at which methods are ranked: the one that must be found, else the largest."""
     criterion = book.study.criteria.power
-    return criterion.at if criterion and criterion.at in series.sizes else list(series.sizes)[-1]
+    return criterion.at if criterion and criterion.at in series else list(series)[-1]
 
 
 def title(book, series, nulls):
@@ -108,7 +101,7 @@ def title(book, series, nulls):
         return book.findings.power_curves(len(nulls))
     keys = {one.setting.key for one in nulls}
     found = None
-    for name in reversed(list(series.sizes)[1:]):
+    for name in reversed(list(series)[1:]):
         rows = [
             book.rows[one.number, lead]
             for one in book.outcome.conditions
@@ -119,7 +112,7 @@ def title(book, series, nulls):
         found = name
     if found is None:
         return book.findings.never_found(book.called(lead), f"{criterion.least:g}")
-    size = size_text(book, series.sizes[found])
+    size = size_text(book, series[found])
     return book.findings.found_from(book.called(lead), f"{criterion.least:g}", size)
 
 
@@ -134,7 +127,7 @@ def size_text(book, size):
 def panel(book, series, conditions):
     """The Drawing of one setting's curves: conditions by the name of their difference."""
     multiplicative = book.study.question.scale == "multiplicative"
-    sizes = np.array(list(series.sizes.values()))
+    sizes = np.array(list(series.values()))
     x = Axis(float(sizes[0]), float(sizes[-1]), LEFT, RIGHT, log=multiplicative)
     y = Axis(0, 1, HEIGHT - FOOT, TOP)
     at = target(book, series)
@@ -142,17 +135,17 @@ def panel(book, series, conditions):
     criterion = book.study.criteria.power
     if criterion is not None:
         drawing.line([(LEFT, y(criterion.least)), (RIGHT, y(criterion.least))], "edge", 1, (2, 2))
-    drawing.line([(x(series.sizes[at]), TOP), (x(series.sizes[at]), HEIGHT - FOOT)], "edge", 0.8)
+    drawing.line([(x(series[at]), TOP), (x(series[at]), HEIGHT - FOOT)], "edge", 0.8)
     for name in sorted(book.drawn, key=lambda name: name == book.lead.name):
         curve(
             book,
             drawing,
             x(sizes),
             y,
-            [book.rows[conditions[one].number, name] for one in series.sizes],
+            [book.rows[conditions[one].number, name] for one in series],
             name,
         )
-    ranking(book, drawing, conditions[at], size_text(book, series.sizes[at]))
+    ranking(book, drawing, conditions[at], size_text(book, series[at]))
     left_axis(drawing, y, LEFT)
     shown_ticks = list(sizes) if len(sizes) <= 6 else None
     bottom_axis(
@@ -193,5 +186,5 @@ def ranking(book, drawing, condition, heading):
 def panel_label(book, series, condition):
     """What a reader who cannot see the panel is told."""
     rates = [(book.label(name), book.detection(condition.number, name)) for name in book.drawn]
-    at = size_text(book, series.sizes[condition.levels["difference"]])
+    at = size_text(book, series[condition.levels["difference"]])
     return book.words.power_panel(book.name(condition, difference=False), at, rates)
