@@ -147,6 +147,48 @@ simulation.replications = {replications}
 """
 
 
+LARGE = """format = 1
+study.compare = "means"
+methods.use = ["classical_f", "welch_f", "brown_forsythe_f", "kruskal_wallis", "one", "other"]
+methods.routes.one = { check = "levene_median", if_passed = "classical_f", if_failed = "welch_f" }
+methods.routes.other = { check = "shapiro_residuals", if_passed = "welch_f", if_failed = "kruskal_wallis" }
+criteria = { size = { upper = 0.08 }, power = { at = "d3", least = 0.5 } }
+simulation.replications = 2000
+[vary.shape]
+normal = "normal"
+uniform = "uniform"
+laplace = "laplace"
+exponential = "exponential"
+skewed = { family = "lognormal", sigma = 0.3 }
+"""
+
+
+def large_study():
+    """The text of a study of 400 conditions and six methods."""
+    sizes = [f"vary.sizes.s{place} = [{4 + place}, {6 + place}, {9 + place}]" for place in range(5)]
+    spreads = [f"vary.spread.r{place} = [1, {1 + place / 2}, {1 + place}]" for place in range(4)]
+    differences = [f"vary.difference.d{place} = [0, 0, {place / 2}]" for place in range(4)]
+    return "\n".join([*sizes, *spreads, *differences, LARGE])
+
+
+def reports():
+    """Seconds that documents of a finished result take as a whole command, and the size of the page."""
+    demonstration = (Path(__file__).parents[2] / "experiments" / "lap_shear.toml").read_text(encoding="utf-8")
+    cases = {
+        "report of the demonstration, seconds": (demonstration, 5),
+        "report of 400 conditions and six methods, seconds": (large_study(), 20),
+    }
+    for name, (text, wanted) in cases.items():
+        with tempfile.TemporaryDirectory() as folder:
+            run.run(parse(text, "x.toml"), folder, 2)
+            words = [sys.executable, "-c", "from workbench.cli import main; main()", "report", folder]
+            start = time.perf_counter()
+            subprocess.run(words, capture_output=True, check=True)
+            report(name, time.perf_counter() - start, wanted)
+            page = (Path(folder) / "report.html").stat().st_size / 1e6
+    report("its page, MB", page, 15)
+
+
 def long_run(workers):
     """Seconds of a long run, from experiment to decision, once the program is loaded."""
     with tempfile.TemporaryDirectory() as folder:
@@ -197,6 +239,7 @@ def main():
         at_most=False,
     )
     commands()
+    reports()
     if "--long" in sys.argv:
         report(f"one worker by two, {LONG:,} replications", long_run(1) / long_run(2), 1.8, at_most=False)
         report(f"largest process at {LONG:,} replications, MB", memory(2), 300)

@@ -418,7 +418,7 @@ def test_more_than_twelve_kinds_of_data_have_further_figures(tmp_path, number, e
     text = f'format = 1\n[study]\ncompare = "means"\n[vary.sizes]\nfew = [5, 5]\n[vary.spread]\n{spreads}\n'
     study = parse(f'{text}[methods]\nuse = ["welch_f"]\n[simulation]\nreplications = 400\n', "x.toml")
     found = populations.Populations(Book(run.run(study, tmp_path, 1))).further()
-    assert [sheet.title for sheet in found] == [f"Further kinds of data{end}" for end in ends]
+    assert [sheet.title for sheet in found] == [f"Further settings{end}" for end in ends]
 
 
 @pytest.mark.parametrize(

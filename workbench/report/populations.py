@@ -29,6 +29,9 @@ COARSE = 40
 TAIL = 0.005
 """Share of every group that may lie beyond either end of the axis."""
 
+MOST_FURTHER = 120
+"""Settings that the annex draws; tables have the true quantities of all."""
+
 MOST_DOTS = 60
 """Values of the example dataset that are drawn in each group."""
 
@@ -50,34 +53,40 @@ def kind_name(book, condition):
     return book.name(condition, factors)
 
 
+def settings(book):
+    """A condition for each setting: without a difference, where there is one."""
+    found = {}
+    for condition in book.nulls or book.outcome.conditions:
+        found.setdefault((condition.setting.key, condition.difference), condition)
+    return list(found.values())
+
+
 class Populations:
-    """The kinds of data of a study: those that decide in one Sheet, all others for the annex."""
+    """The populations of a study: the kinds of data that decide in one Sheet, all other settings for the annex."""
 
     def __init__(self, book):
         self.book, found = book, kinds(book)
         self.scale, first = Scale(book, found), book.deciding(found)
-        self.rest = [one for one in found if one not in first]
-        self.sheet = population_sheet(book, self.scale, first, "populations", title(book, found))
+        shown = {one.number for one in first}
+        self.rest = [one for one in settings(book) if one.number not in shown]
+        panels = [(kind_name(book, one), panel(book, self.scale, one)) for one in first]
+        self.sheet = population_sheet(self.scale, first, panels, book, "populations", title(book, found))
         self.sheet.most = len(found)
 
     def further(self):
-        """[Sheet] of the kinds of data that the first figure leaves out."""
-        starts = range(0, len(self.rest), MOST_PANELS)
-        return [
-            population_sheet(
-                self.book,
-                self.scale,
-                self.rest[start : start + MOST_PANELS],
-                f"populations_{place}",
-                self.book.findings.further_kinds(place, len(starts)),
-            )
-            for place, start in enumerate(starts, 2)
-        ]
+        """[Sheet] of the settings that the first figure leaves out; of very many the first."""
+        book, starts = self.book, range(0, min(len(self.rest), MOST_FURTHER), MOST_PANELS)
+        found = []
+        for place, start in enumerate(starts, 2):
+            some = self.rest[start : start + MOST_PANELS]
+            panels = [(book.name(one), panel(book, self.scale, one)) for one in some]
+            heading = book.findings.further_settings(place, len(starts))
+            found.append(population_sheet(self.scale, some, panels, book, f"populations_{place}", heading))
+        return found
 
 
-def population_sheet(book, scale, some, name, title):
-    """The Sheet of some kinds of data."""
-    panels = [(kind_name(book, one), panel(book, scale, one)) for one in some]
+def population_sheet(scale, some, panels, book, name, title):
+    """The Sheet of some settings, given their panels."""
     shifted = scale.shift is not None and bool(book.nulls)
     smooth = any(scale.lattice(one) is None and one.setting.disturbances for one in some)
     told = {"shifted": shifted, "smooth": smooth, "fewer_groups": book.study.factors.groups > MOST_GROUPS}
