@@ -8,13 +8,13 @@ import numpy as np
 import pytest
 from hypothesis import given, settings
 from hypothesis import strategies as st
-from matplotlib.image import imread
+from PIL import Image
 
 from workbench import texts
 from workbench.look import SLOTS, palette
 from workbench.report import shown
 from workbench.report.axes import Axis, log_ticks, pushed_apart
-from workbench.report.drawing import MARKS, Drawing, document, fitted, inline, number, painted
+from workbench.report.drawing import MARKS, Drawing, document, fitted, inline, number, painted, png
 
 tried = settings(max_examples=200, derandomize=True, deadline=None)
 
@@ -52,7 +52,7 @@ def test_a_drawing_that_says_nothing_is_hidden_from_readers():
 
 
 def test_a_painted_drawing_has_its_colours_at_its_places():
-    image = imread(io.BytesIO(painted(sample(), palette(), 100, 254)))
+    image = np.asarray(painted(sample(), palette(), 100, 254)) / 255
     assert image.shape[:2] == (500, 1000)
 
     def colour(x, y):
@@ -68,7 +68,7 @@ def test_a_hollow_mark_is_paper_within_and_its_own_colour_around(kind):
     for hollow in (False, True):
         drawing = Drawing(20, 20)
         drawing.mark(kind, 10, 10, "m1", 12, hollow)
-        image = imread(io.BytesIO(painted(drawing, palette(), 20, 254)))
+        image = np.asarray(painted(drawing, palette(), 20, 254)) / 255
         middle = image[100, 100, :3]
         assert np.allclose(middle, 1.0) == hollow
     assert kind == "circle" or kind in MARKS
@@ -164,3 +164,10 @@ def test_true_quantities_have_the_digits_of_their_spread_and_no_false_ones():
     wide = {"mean": 1234567.8, "sd": 4321.0, "skewness": None}
     assert shown.quantities(wide, ("mean", "sd", "skewness")) == ["1,234,568", "4,321", "–"]
     assert shown.quantities({"mean": -0.0123, "sd": None}, ("mean", "sd")) == ["\u22120.01", "–"]
+
+
+def test_a_png_file_is_the_image_with_its_size_on_paper():
+    image = painted(sample(), palette(), 90)
+    kept = Image.open(io.BytesIO(png(image)))
+    assert np.array_equal(np.asarray(kept), np.asarray(image)) and kept.mode == "RGB"
+    assert kept.size[0] / kept.info["dpi"][0] * 25.4 == pytest.approx(90, abs=0.1)

@@ -14,6 +14,7 @@ from matplotlib.font_manager import FontProperties, findfont, get_font
 from matplotlib.patches import Circle, PathPatch
 from matplotlib.path import Path
 from matplotlib.textpath import TextPath
+from PIL import Image
 
 from workbench.texts import bare
 
@@ -220,20 +221,27 @@ def dashes(item):
 
 
 def painted(drawing, colours, width, dots_per_inch=300):
-    """A drawing as the bytes of a PNG file, `width` millimetres wide."""
+    """A drawing as an image, `width` millimetres wide."""
     inches = width / 25.4
     unit = 72 * inches / drawing.width
     figure = Figure(
         (inches, inches * drawing.height / drawing.width), dots_per_inch, facecolor=colours["paper"]
     )
-    target = io.BytesIO()
     with warnings.catch_warnings():
         warnings.filterwarnings("ignore", "Glyph .* missing")  # letters the font lacks are painted as boxes
         for item in drawing.items:
             figure.add_artist(ARTISTS[type(item)](item, drawing, colours, unit))
-        FigureCanvasAgg(figure).print_png(
-            target, pil_kwargs={"compress_level": 2}, metadata={"Software": None}
-        )
+        canvas = FigureCanvasAgg(figure)
+        canvas.draw()
+    image = Image.fromarray(np.asarray(canvas.buffer_rgba())).convert("RGB")
+    image.info["dpi"] = (dots_per_inch, dots_per_inch)
+    return image
+
+
+def png(image):
+    """An image as the bytes of a PNG file."""
+    target = io.BytesIO()
+    image.save(target, "png", dpi=image.info["dpi"], compress_level=2)
     return target.getvalue()
 
 

@@ -3,7 +3,7 @@
 from dataclasses import dataclass, field
 
 from workbench.look import palette
-from workbench.report.drawing import Drawing, document, fitted, inline, painted
+from workbench.report.drawing import Drawing, document, fitted, inline, painted, png
 
 WIDE = 180
 """Millimetres of a figure in print: the width of a page's text."""
@@ -94,14 +94,13 @@ class Sheet:
         return drawing
 
     def files(self):
-        """{file name: bytes} of the figure as SVG and PNG."""
+        """(file name, function that gives its bytes) of the figure as SVG and PNG; the PNG is painted already."""
         sheet, colours = self.composed(), palette()
         width = WIDE if self.columns > 1 else WIDE * min(1, sheet.width / 560)
         stem = f"{self.number:02d}_{self.name}"
-        return {
-            f"{stem}.svg": document(sheet, colours, width).encode("utf-8"),
-            f"{stem}.png": painted(sheet, colours, width),
-        }
+        yield f"{stem}.svg", lambda: document(sheet, colours, width).encode("utf-8")
+        image = painted(sheet, colours, width)
+        yield f"{stem}.png", lambda: png(image)
 
 
 def swatch(drawing, x, y, slot, leads):

@@ -1,6 +1,7 @@
 """Page: the whole report as one HTML file, and its figures as files."""
 
 import json
+from concurrent.futures import ThreadPoolExecutor
 from functools import cache
 from importlib.resources import files
 
@@ -170,5 +171,7 @@ class Report:
         return environment().get_template("report.html").render(self.values())
 
     def files(self):
-        """{name: bytes} of every figure as SVG and PNG."""
-        return {name: content for sheet in self.sheets for name, content in sheet.files().items()}
+        """{name: bytes} of every figure as SVG and PNG; one is packed while the next is painted."""
+        with ThreadPoolExecutor(1) as pool:
+            made = {name: pool.submit(pack) for sheet in self.sheets for name, pack in sheet.files()}
+        return {name: waiting.result() for name, waiting in made.items()}
