@@ -143,7 +143,7 @@ def test_no_file_speaks_of_machines_or_other_programs():
     for name in filter(None, tracked):
         path = ROOT / name
         if (
-            path.suffix in (".py", ".md", ".toml", ".csv", ".json", ".html")
+            path.suffix in (".py", ".md", ".toml", ".csv", ".json", ".html", ".jinja", ".css")
             and path.name != Path(__file__).name
         ):
             text = path.read_text(encoding="utf-8")
