@@ -5,7 +5,7 @@ import numpy as np
 from workbench import mechanism
 from workbench.histogram import counts
 from workbench.records import Tally, Task, Want, difference_key
-from workbench.routes.route import Route, parts_of
+from workbench.routes.procedure import Procedure, parts_of
 from workbench.streams import Lane, stream
 
 REPLICATIONS = 2000
@@ -91,7 +91,7 @@ def blocks(total):
 def outcome(method, batch, rngs):
     """((R,) p-values, (R,) ends taken or None where the method has but one)."""
     p = method.judge(batch, rngs)
-    return p, method.ends_taken(batch, rngs) if isinstance(method, Route) else None
+    return p, method.ends_taken(batch, rngs) if isinstance(method, Procedure) else None
 
 
 def tally(task, chunk, difference, method, outcomes):

@@ -149,7 +149,7 @@ def read_shape(reader, path, found):
     """The Shape at a path; None where it is wrong."""
     if isinstance(found, str):
         return reader.part(SHAPES, path, found, {})
-    return read_named_table(reader, path, SHAPES, "family", found)
+    return reader.named_part(SHAPES, path, "family", found)
 
 
 def read_disturbances(reader, path, found):
@@ -166,21 +166,8 @@ def read_disturbances(reader, path, found):
         if isinstance(one, str):
             parts.append(reader.part(DISTURBANCES, where, one, {}))
         else:
-            parts.append(read_named_table(reader, where, DISTURBANCES, "kind", one))
+            parts.append(reader.named_part(DISTURBANCES, where, "kind", one))
     return None if None in parts else tuple(parts)
-
-
-def read_named_table(reader, path, shelf, key, found):
-    """A part from a table that names it under the key and holds its settings; None where it is wrong."""
-    if not isinstance(found, dict):
-        reader.wrong(path, f"a word or a table with '{key}' wanted; got {shown(found)}")
-        return None
-    if key not in found:
-        reader.wrong(path, f"'{key}' is missing; {suggestion('', shelf.names())}")
-        return None
-    settings = {name: value for name, value in found.items() if name != key}
-    where = (*path, key) if found[key] not in shelf else path
-    return reader.part(shelf, where, found[key], settings)
 
 
 def read_left_out(reader, levels):

@@ -134,6 +134,11 @@ class Batch:
         return self.shared(ranks)
 
     @property
+    def ranked(self):
+        """The batch of mid-ranks, of which means and variances are those of the ranks."""
+        return self.shared(ranked)
+
+    @property
     def rank_sums(self):
         """(R, k) sums of mid-ranks."""
         return self.shared(rank_state)[0]
@@ -210,6 +215,12 @@ def rank_state(batch):
 def ranks(batch):
     """(R, N) mid-ranks of a batch."""
     return mid_ranks(batch.values)[0]
+
+
+def ranked(batch):
+    """The Batch of the mid-ranks of a batch; NaN where a value is missing."""
+    ranks = batch.ranks
+    return Batch(np.where(ranks > 0, ranks, np.nan), batch.designed)
 
 
 def total(batch):

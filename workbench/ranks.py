@@ -148,17 +148,27 @@ def exact_rank_sums(values, layout):
 
 def mid_ranks(values):
     """((R, N) mid-ranks in the order of the values, (R,) sums of t^3 - t over ties); 0 where a value is NaN."""
-    order = np.argsort(values, axis=1, kind="stable")
-    ordered = np.take_along_axis(values, order, axis=1)
-    present = ~np.isnan(ordered)
-    replications, total = values.shape
+    places = np.argsort(values, axis=1)
+    places += np.arange(0, values.size, values.shape[1])[:, None]
+    ordered = values.reshape(-1)[places]
     opens = np.ones(values.shape, dtype=bool)
-    opens[:, 1:] = ordered[:, 1:] != ordered[:, :-1]
-    starts = np.flatnonzero(opens)
-    lengths = np.diff(starts, append=values.size)
-    middles = np.repeat(starts % total + (lengths + 1) / 2, lengths).reshape(values.shape)
+    np.not_equal(ordered[:, 1:], ordered[:, :-1], out=opens[:, 1:])
+    middles, ties = middles_and_ties(opens)
     ranks = np.empty(values.shape)
-    np.put_along_axis(ranks, order, np.where(present, middles, 0.0), axis=1)
+    ranks.reshape(-1)[places] = middles
+    if np.isnan(ordered[:, -1]).any():
+        ranks[np.isnan(values)] = 0
+    return ranks, ties
+
+
+def middles_and_ties(opens):
+    """((R, N) mid-ranks in order, (R,) sums of t^3 - t) from (R, N) bool: whether a run of t equal values starts."""
+    replications, total = opens.shape
+    starts = np.flatnonzero(opens)
+    if len(starts) == opens.size:
+        return np.broadcast_to(np.arange(1.0, total + 1), opens.shape), np.zeros(replications)
+    lengths = np.diff(starts, append=opens.size)
+    middles = np.repeat(starts % total + (lengths + 1) / 2, lengths).reshape(opens.shape)
     # NaN differs from NaN, so every missing value is a run of length 1 and adds nothing.
     ties = np.bincount(starts // total, weights=lengths.astype(float) ** 3 - lengths, minlength=replications)
-    return ranks, ties
+    return middles, ties

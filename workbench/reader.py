@@ -79,6 +79,18 @@ class Reader:
             self.problems(path, error.problems, shelf[word].__dataclass_fields__)
             return None
 
+    def named_part(self, shelf, path, key, found):
+        """A part from a table that names it under the key and holds its settings; None where it is wrong."""
+        if not isinstance(found, dict):
+            self.wrong(path, f"a word or a table with '{key}' wanted; got {shown(found)}")
+            return None
+        if key not in found:
+            self.wrong(path, f"'{key}' is missing; {suggestion('', shelf.names())}")
+            return None
+        settings = {name: value for name, value in found.items() if name != key}
+        where = (*path, key) if found[key] not in shelf else path
+        return self.part(shelf, where, found[key], settings)
+
     def problems(self, path, problems, known):
         """Note problems that were found in the settings of the table at the path."""
         for inner, text in problems:

@@ -73,13 +73,18 @@ class Judge:
 
     @property
     def label(self):
-        """What sentences call it: "use the …"."""
-        return getattr(self.method, "label", f"rule {isolated(self.name)}")
+        """What sentences call it: "use the …"; settings other than the usual ones are told."""
+        label = getattr(self.method, "label", None)
+        if label is None:
+            return f"rule {isolated(self.name)}"
+        settings = ", ".join(f"{name} {value}" for name, value in self.method.settings().items())
+        return f"{label} ({settings})" if settings else label
 
     @property
     def short(self):
-        """What figures call it where space is short."""
-        return getattr(self.method, "short", self.name)
+        """What figures call it where space is short: its name in the file where it has settings of its own."""
+        usual = hasattr(self.method, "short") and not self.method.settings()
+        return self.method.short if usual else self.name
 
     @property
     def hypotheses(self):

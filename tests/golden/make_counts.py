@@ -14,8 +14,11 @@ from workbench.chunk import judged
 from workbench.disturbances import DISTURBANCES
 from workbench.estimands import ESTIMANDS
 from workbench.methods import METHODS
+from workbench.outliers import RULES
 from workbench.records import Setting, Task, Want
+from workbench.routes.dropping import Dropping
 from workbench.routes.route import Route
+from workbench.routes.smallest import Smallest
 from workbench.shapes import SHAPES
 
 SHAPE_SETTINGS = {
@@ -30,13 +33,26 @@ DISTURBANCE_SETTINGS = {"round": {"to": 0.5}}
 FILE = Path(__file__).with_name("counts.json")
 
 
+METHOD_SETTINGS = {
+    "permutation_f": {"permutations": 99},
+    "permutation_welch": {"permutations": 99},
+    "kruskal_wallis_permuted": {"permutations": 99},
+    "parametric_bootstrap_f": {"resamples": 50},
+}
+"""Few resamples: it is the numbers that must not move, not their precision."""
+
+
 def methods():
-    """Every method with its default settings, and a route through every check."""
-    found = {name: METHODS.make(name) for name in METHODS.names()}
-    way = found["classical_f"]
-    for name in CHECKS.names():
-        way = Route(CHECKS.make(name), 0.1, way, found["welch_f"])
-    return found | {"route": way}
+    """Every method, a route through every check, and the other procedures, by name and version."""
+    made = [METHODS.make(name, METHOD_SETTINGS.get(name)) for name in METHODS.names()]
+    found = {f"{method.name} {method.version}": method for method in made}
+    f, welch = METHODS.make("classical_f"), METHODS.make("welch_f")
+    for check in map(CHECKS.make, CHECKS.names()):
+        found[f"route by {check.name} {check.version}"] = Route(check, 0.1, f, welch)
+    found["smallest of two"] = Smallest((f, METHODS.make("kruskal_wallis")))
+    for name, rule in RULES.items():
+        found[f"without outliers by {name}"] = Dropping(rule, welch)
+    return found
 
 
 def settings():
@@ -65,7 +81,7 @@ def counts():
         task = Task(99, one, (0.05,), (0, 7), (Want(difference, tuple(judges.values())),))
         tallies = judged(task)
         told[name] = {
-            f"{word} {getattr(method, 'version', '')}".strip(): [
+            word: [
                 sum(ones(tally.rejected[0.05]) for tally in tallies if tally.method == method.key()),
                 sum(ones(tally.undefined) for tally in tallies if tally.method == method.key()),
             ]

@@ -8,8 +8,8 @@ import workbench
 HOUSE = Path(workbench.__file__).parent
 
 ROOMS = """
-errors keys cores texts records registry places streams quadrature population ranks moments groups tails significance
-histogram numbers look words
+errors keys cores texts records registry places streams quadrature population ranks moments groups outliers
+relabelled tails limits significance histogram numbers look words
 shapes disturbances estimands methods checks measures criteria routes
 reader sections factors judges study mechanism grid theory
 chunk plan ledger pool

@@ -141,9 +141,13 @@ def setting_and_difference(design):
 
 
 def method_of(text):
-    """The method, or the rule `check -> method if passed / method if tripped` with the check at 0.05."""
+    """The method, also as `method:degrees of freedom`, or the rule `check -> method if passed / method if tripped`.
+
+    The check is done at 0.05.
+    """
     if "->" not in text:
-        return METHODS.make(text)
+        name, _, df = text.partition(":")
+        return METHODS.make(name, {"df": df} if df else {})
     check, passed, failed = re.split(" -> | / ", text)
     return Route(
         check=CHECKS.make(check), level=0.05, if_passed=METHODS.make(passed), if_failed=METHODS.make(failed)

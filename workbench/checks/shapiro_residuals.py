@@ -3,7 +3,7 @@
 import numpy as np
 from scipy.special import ndtr, ndtri
 
-from workbench.checks.check import CHECKS, Check
+from workbench.checks.check import CHECKS, Check, by_size
 
 
 @CHECKS.add
@@ -24,16 +24,20 @@ class ShapiroResiduals(Check):
 
 
 def residual_normality(batch):
-    """(R,) p-values of the residuals; datasets are taken together by how many values they have left."""
-    constant = np.broadcast_to(batch.sum_within == 0, batch.replications)
-    ordered = np.sort(batch.deviations.T, axis=1)
-    totals = np.broadcast_to(batch.total, batch.replications)
-    p = np.full(batch.replications, np.nan)
-    for total in np.unique(totals).astype(int):
-        if 3 <= total <= 5000:
-            rows = np.flatnonzero((totals == total) & ~constant)
-            p[rows] = shapiro_wilk(ordered[rows, :total])
-    return p
+    """(R,) p-values of the residuals."""
+    return normality(batch.deviations, batch.total, batch.sum_within == 0)
+
+
+def normality(columns, sizes, constant):
+    """(R,) p-values of (n, R) values, of which (R,) or (1,) are present; NaN where they are constant."""
+    ordered = columns.T.copy()
+    ordered.sort(axis=1)  # NaN is sorted to the end
+
+    def judge(rows, size):
+        return shapiro_wilk(ordered[rows, :size])
+
+    p = by_size(sizes, len(ordered), judge, least=3, most=5000)
+    return np.where(constant, np.nan, p)
 
 
 def shapiro_wilk(ordered):

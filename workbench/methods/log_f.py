@@ -20,8 +20,17 @@ class LogF(Method):
     cite = "Bartlett, M. S. (1947). The use of transformations. Biometrics 3(1), 39-52"
 
     def kernel(self, batch, rng):
-        positive = ~(batch.columns <= 0).any(axis=0)
-        return np.where(positive, anova_tail(batch.shared(logarithms)), np.nan)
+        return on_logarithms(anova_tail, batch)
+
+
+def on_logarithms(tail, batch):
+    """(R,) p-values that tail gives for the batch of logarithms; NaN where a value is 0 or less."""
+    return np.where(batch.shared(all_positive), tail(batch.shared(logarithms)), np.nan)
+
+
+def all_positive(batch):
+    """(R,) bool: whether no value is 0 or less."""
+    return ~(batch.columns <= 0).any(axis=0)
 
 
 def logarithms(batch):

@@ -17,10 +17,21 @@ class WelchF(Method):
     cite = "Welch, B. L. (1951). On the comparison of several mean values. Biometrika 38(3/4), 330-336"
 
     def kernel(self, batch, rng):
-        weights, shares, inflation, freedom = batch.shift_free(welch_weights)
-        centre = (shares * batch.means).sum(axis=1, keepdims=True)
-        between = (weights * (batch.means - centre) ** 2).sum(axis=1)
-        return f_distribution_tail(batch.groups - 1, freedom, between / inflation)
+        return welch_tail(batch)
+
+
+def welch_tail(batch):
+    """(R,) upper tail areas of Welch's F."""
+    _, _, inflation, freedom = batch.shift_free(welch_weights)
+    between = batch.shared(welch_squares).sum(axis=1)
+    return f_distribution_tail(batch.groups - 1, freedom, between / inflation)
+
+
+def welch_squares(batch):
+    """(R, k) squared distances of the group means from their weighted mean, in squared standard errors."""
+    weights, shares, _, _ = batch.shift_free(welch_weights)
+    centre = (shares * batch.means).sum(axis=1, keepdims=True)
+    return weights * (batch.means - centre) ** 2
 
 
 def welch_weights(batch):

@@ -10,7 +10,7 @@ from workbench.methods import METHODS
 from workbench.outcome import manifest
 from workbench.population import QUANTITIES
 from workbench.report import shown
-from workbench.routes.route import parts_of
+from workbench.routes.procedure import parts_of
 from workbench.shapes import SHAPES
 
 A_TABLE = 6

@@ -1,0 +1,41 @@
+"""Several tests of which the smallest p-value is reported, as some people do."""
+
+from dataclasses import dataclass
+
+import numpy as np
+
+from workbench.routes.procedure import Procedure, ends_of, ends_taken, joined, parts_of
+
+
+@dataclass(frozen=True)
+class Smallest(Procedure):
+    """Do all tests and take the smallest p-value; undefined where none of them gives one."""
+
+    of: tuple
+
+    def content(self):
+        return {"smallest_p_of": [way.content() for way in self.of]}
+
+    def parts(self):
+        return [part for way in self.of for part in parts_of(way)]
+
+    def ends(self):
+        return [
+            (joined("smallest p-value", path), method) for way in self.of for path, method in ends_of(way)
+        ]
+
+    def judge(self, batch, rngs):
+        least = self.all_of(batch, rngs).min(axis=0)
+        return np.where(np.isinf(least), np.nan, least)
+
+    def all_of(self, batch, rngs):
+        """(tests, R) p-values, infinite where there is none."""
+        found = np.stack([way.judge(batch, rngs) for way in self.of])
+        return np.where(np.isnan(found), np.inf, found)
+
+    def ends_taken(self, batch, rngs):
+        first = np.argmin(self.all_of(batch, rngs), axis=0)
+        before = np.cumsum([0, *(len(ends_of(way)) for way in self.of)])[:-1]
+        each = np.stack([ends_taken(way, batch, rngs) for way in self.of])
+        taken = np.take_along_axis(each, first[None], axis=0)[0]
+        return taken + before[first]
