@@ -79,7 +79,7 @@ def log_transform(df, s):
 
     Each term brings 1 - 2 s / (j (j + 1)) to the power -df / 2, and the product over all j is
     -cos(pi w) / (2 pi s) with w^2 = 1/4 + 2 s (Anderson & Darling 1952, Annals of Mathematical Statistics 23,
-    193-212, section 4). The logarithm of the cosine is taken apart so that it has no jump.
+    193-212). The logarithm of the cosine is taken apart so that it has no jump.
     """
     turn = np.exp(2j * np.pi * (w := np.sqrt(0.25 + 2 * s)))
     log_cosine = np.log1p(turn) - 1j * np.pi * w + 1j * np.pi

@@ -63,6 +63,13 @@ def test_ends_of_the_smallest_count_through_nested_procedures():
     inner = Route(CHECKS.make("levene_median"), 0.3, F, WELCH)
     way = Smallest((inner, RANKS))
     assert [method for _, method in way.ends()] == [F, WELCH, RANKS]
+    assert [path for path, _ in way.ends()] == [
+        "rule (1) smallest, levene_median passed",
+        "rule (1) smallest, levene_median tripped",
+        "kruskal_wallis smallest",
+    ]
+    trims = [METHODS.make("trimmed_welch", {"trim": trim}) for trim in (0.1, 0.2)]
+    assert len({path for path, _ in Smallest((*trims, F)).ends()}) == 3
     values = sample()
     p, taken = judged(way, values)
     inner_p, inner_taken = judged(inner, values)

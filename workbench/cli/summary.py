@@ -26,7 +26,9 @@ def parts(outcome, narrow):
     yield Text(scope(outcome) + "\n")
     yield methods_table(study, decision.standings, narrow)
     if len(outcome.tables.branches):
-        yield Text("\nHow often each rule came to its ends at most, and how often it then erred:")
+        yield Text(
+            "\nEnds of each rule where it errs most: how often they are taken there, and how often it then errs:"
+        )
         yield branches_table(outcome, narrow)
     yield Text("\n" + decision.sentences[0], style="bold")
     yield from map(Text, decision.sentences[1:])

@@ -120,7 +120,7 @@ def distance(runs, sizes):
 
 
 def variance(sizes, total):
-    """(R,) or (1,) variance of A2 over all arrangements of untied values, section 2 of the paper; NaN where it is 0.
+    """(R,) or (1,) variance of A2 over all arrangements of untied values, as the paper has it; NaN where it is 0.
 
     It is that of the form without mid-ranks; the paper uses it for both.
     """

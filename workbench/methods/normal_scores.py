@@ -21,8 +21,8 @@ class NormalScores(Method):
     assumes = "nothing but equal distributions under the null hypothesis; sizes large enough for chi-square"
     undefined_when = "all values are equal, or a group is empty"
     cite = (
-        "van der Waerden, B. L. (1952). Order tests for the two-sample problem and their power. Indagationes "
-        "Mathematicae 55, 453-458; for k groups Conover, W. J. (1999). Practical Nonparametric Statistics, 3rd ed. "
+        "van der Waerden, B. L. (1952). Order tests for the two-sample problem and their power. Proceedings of the "
+        "Koninklijke Nederlandse Akademie van Wetenschappen A 55, 453-458; for k groups Conover, W. J. (1999). Practical Nonparametric Statistics, 3rd ed. "
         "Wiley, section 5.10"
     )
 

@@ -21,8 +21,16 @@ class Smallest(Procedure):
 
     def ends(self):
         return [
-            (joined("smallest p-value", path), method) for way in self.of for path, method in ends_of(way)
+            (joined(f"{word} smallest", path), method)
+            for word, way in zip(self.words(), self.of, strict=True)
+            for path, method in ends_of(way)
         ]
+
+    def words(self):
+        """What each test is called among the others: its name, with its number where that is not enough."""
+        names = [getattr(way, "name", "rule") for way in self.of]
+        several = {name for name in names if name == "rule" or names.count(name) > 1}
+        return [f"{name} ({place})" if name in several else name for place, name in enumerate(names, 1)]
 
     def judge(self, batch, rngs):
         least = self.all_of(batch, rngs).min(axis=0)
