@@ -16,9 +16,9 @@ def main():
     """Photograph the report's decision and what was asked."""
     with sync_playwright() as driver:
         browser = driver.chromium.launch(executable_path=shutil.which("chromium"), args=FLAGS)
-        page = browser.new_page(viewport={"width": 1010, "height": 1060})
+        page = browser.new_page(viewport={"width": 1010, "height": 1230})
         page.goto((FOLDER / "report.html").as_uri())
-        page.screenshot(path=FOLDER / "report.png", clip={"x": 0, "y": 0, "width": 1010, "height": 1060})
+        page.screenshot(path=FOLDER / "report.png", clip={"x": 0, "y": 0, "width": 1010, "height": 1230})
         browser.close()
 
 

@@ -22,8 +22,8 @@ class NormalScores(Method):
     undefined_when = "all values are equal, or a group is empty"
     cite = (
         "van der Waerden, B. L. (1952). Order tests for the two-sample problem and their power. Proceedings of the "
-        "Koninklijke Nederlandse Akademie van Wetenschappen A 55, 453-458; for k groups Conover, W. J. (1999). Practical Nonparametric Statistics, 3rd ed. "
-        "Wiley, section 5.10"
+        "Koninklijke Nederlandse Akademie van Wetenschappen A 55, 453-458; for k groups Conover, W. J. (1999). "
+        "Practical Nonparametric Statistics, 3rd ed. Wiley, section 5.10"
     )
 
     def kernel(self, batch, rng):

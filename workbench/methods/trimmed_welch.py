@@ -17,7 +17,7 @@ class TrimmedWelch(Method):
 
     name = "trimmed_welch"
     label = "Yuen–Welch test"
-    short = "Yuen–Welch"
+    short = "Yuen"
     hypothesis = "trimmed means"
     assumes = "groups without strong skewness, at least five values each; spreads may differ"
     undefined_when = "all Winsorised values of some group are equal, or fewer than two of its values are left"

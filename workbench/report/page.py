@@ -6,7 +6,7 @@ from functools import cache
 from importlib.resources import files
 
 from jinja2 import Environment, PackageLoader, StrictUndefined
-from markupsafe import Markup
+from markupsafe import Markup, escape
 
 from workbench import texts
 from workbench.look import STEPS, palette
@@ -57,6 +57,7 @@ def environment():
         "ranges": evidence.ranges,
         "sizes": sizes,
         "whole": whole,
+        "breakable": breakable,
     }
     made.globals["swatch"] = swatch_element
     return made
@@ -70,6 +71,11 @@ def sizes(numbers):
 def whole(sheet):
     """A class for figures that fit a printed page and are not to be broken."""
     return " whole" if len(sheet.panels) <= ON_A_PAGE else ""
+
+
+def breakable(label):
+    """A name that may be broken behind its dashes."""
+    return Markup("–<wbr>").join(escape(label).split("–"))
 
 
 def swatch_element(slot, leads):
