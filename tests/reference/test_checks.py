@@ -312,7 +312,7 @@ def test_hartley_stays_a_share_for_any_ratio():
     assert np.isnan(p_value("hartley_ratio", ([0.1, 0.1, 0.1], [1.2, 2.5, 0.7], [4.1, 9.3, 2.0])))
 
 
-@steady
+@settings(steady, max_examples=30)
 @given(drawn=batches([HUNDREDTHS, DRAWN]))
 def test_shapiro_of_each_group_adjusted_by_holm_is_the_smallest_adjusted_p(drawn):
     """statsmodels 0.15, multipletests(method="holm") on SciPy's Shapiro-Wilk p-values of the groups."""

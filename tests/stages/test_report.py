@@ -88,7 +88,7 @@ class Page(HTMLParser):
     def handle_starttag(self, tag, attrs):
         """Note an element that opens."""
         given = dict(attrs)
-        if tag == "meta":
+        if tag in ("meta", "wbr"):
             return
         self.open.append(tag)
         if "aria-label" in given:
