@@ -8,12 +8,12 @@ from html import escape
 from typing import NamedTuple
 
 import numpy as np
-from matplotlib.backends.backend_agg import FigureCanvasAgg
-from matplotlib.figure import Figure
+from matplotlib.backends.backend_agg import RendererAgg
+from matplotlib.colors import to_rgb
 from matplotlib.font_manager import FontProperties, findfont, get_font
-from matplotlib.patches import Circle, PathPatch
 from matplotlib.path import Path
 from matplotlib.textpath import TextPath
+from matplotlib.transforms import Affine2D
 from PIL import Image
 
 from workbench.texts import bare
@@ -222,20 +222,35 @@ def dashes(item):
 
 def painted(drawing, colours, width, dots_per_inch=300):
     """A drawing as an image, `width` millimetres wide."""
-    inches = width / 25.4
-    unit = 72 * inches / drawing.width
-    figure = Figure(
-        (inches, inches * drawing.height / drawing.width), dots_per_inch, facecolor=colours["paper"]
-    )
+    scale = width / 25.4 * dots_per_inch / drawing.width
+    size = int(scale * drawing.width), int(scale * drawing.height)
+    renderer = RendererAgg(*size, dots_per_inch)
+    whole = Affine2D().scale(scale, -scale).translate(0, size[1])
+    paint(renderer, Path.unit_rectangle(), Affine2D().scale(*size), colours["paper"])
     with warnings.catch_warnings():
         warnings.filterwarnings("ignore", "Glyph .* missing")  # letters the font lacks are painted as boxes
         for item in drawing.items:
-            figure.add_artist(ARTISTS[type(item)](item, drawing, colours, unit))
-        canvas = FigureCanvasAgg(figure)
-        canvas.draw()
-    image = Image.fromarray(np.asarray(canvas.buffer_rgba())).convert("RGB")
+            path, fill, stroke = PATHS[type(item)](item)
+            line = (colours[stroke], item.width, getattr(item, "dash", ())) if stroke else None
+            paint(renderer, path, whole, colours[fill] if fill else None, line, scale * 72 / dots_per_inch)
+    image = Image.fromarray(np.asarray(renderer.buffer_rgba())).convert("RGB")
     image.info["dpi"] = (dots_per_inch, dots_per_inch)
     return image
+
+
+def paint(renderer, path, transform, fill, line=None, point=1.0):
+    """Paint a path: fill is a colour or none, line (colour, width, dash) in units of so many points."""
+    context = renderer.new_gc()
+    context.set_linewidth(0)
+    if line is not None:
+        colour, width, dash = line
+        context.set_foreground(colour)
+        context.set_linewidth(width * point)
+        context.set_joinstyle("miter")
+        if dash:
+            context.set_dashes(0, [length * point for length in dash])
+    renderer.draw_path(context, path, transform, to_rgb(fill) if fill else None)
+    context.restore()
 
 
 def png(image):
@@ -245,47 +260,27 @@ def png(image):
     return target.getvalue()
 
 
-def shares(points, drawing):
-    """Points as shares of a figure's width and height, y pointing up."""
-    return points / (drawing.width, -drawing.height) + (0, 1)
-
-
-def outline_artist(item, drawing, colours, unit):
-    """An Outline for matplotlib."""
+def outline_path(item):
+    """(path, fill, stroke) of an Outline."""
     codes, vertices = [], []
     for part in item.parts:
         vertices += [*part, part[0]] if item.closed else [*part]
         codes += [Path.MOVETO] + [Path.LINETO] * (len(part) - 1) + [Path.CLOSEPOLY] * item.closed
-    artist = PathPatch(Path(shares(np.array(vertices), drawing), codes), **paint(item, colours, unit))
-    if item.dash:
-        artist.set_linestyle((0, [length / item.width for length in item.dash]))
-        artist.set_capstyle("butt")
-    return artist
+    return Path(np.array(vertices), codes), item.fill, item.stroke
 
 
-def disc_artist(item, drawing, colours, unit):
-    """A Disc for matplotlib; its path is stretched so that it is round on paper."""
-    path = Circle((item.x, item.y), item.radius)
-    path = path.get_path().transformed(path.get_patch_transform())
-    return PathPatch(Path(shares(path.vertices, drawing), path.codes), **paint(item, colours, unit))
+def disc_path(item):
+    """(path, fill, stroke) of a Disc."""
+    circle = Path.unit_circle()
+    return Path(circle.vertices * item.radius + (item.x, item.y), circle.codes), item.fill, item.stroke
 
 
-def paint(item, colours, unit):
-    """Fill and stroke of an item for matplotlib."""
-    return {
-        "facecolor": colours[item.fill] if item.fill else "none",
-        "edgecolor": colours[item.stroke] if item.stroke else "none",
-        "linewidth": item.width * unit if item.stroke else 0,
-    }
-
-
-def words_artist(item, drawing, colours, unit):
-    """Words for matplotlib, as outlines: a figure repeats many of them, and outlines are laid out once."""
+def words_path(item):
+    """(path, fill, stroke) of Words, as outlines: a figure repeats many of them, and outlines are laid out once."""
     path = letters(item.text, item.bold)
     width = path.vertices[:, 0].max(initial=0.0) * item.size
     start = item.x - {"start": 0.0, "middle": width / 2, "end": width}[item.anchor]
-    vertices = path.vertices * (item.size, -item.size) + (start, item.y)
-    return PathPatch(Path(shares(vertices, drawing), path.codes), facecolor=colours[item.role], linewidth=0)
+    return Path(path.vertices * (item.size, -item.size) + (start, item.y), path.codes), item.role, None
 
 
 @lru_cache(maxsize=4096)
@@ -297,4 +292,4 @@ def letters(text, bold):
     return TextPath((0, 0), text.replace("$", r"\$"), size=1, prop=font)
 
 
-ARTISTS = {Outline: outline_artist, Disc: disc_artist, Words: words_artist}
+PATHS = {Outline: outline_path, Disc: disc_path, Words: words_path}
