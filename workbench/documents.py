@@ -3,15 +3,14 @@
 import re
 
 from workbench.report.page import Report
-from workbench.run import make_directory, write, write_bytes, write_text
+from workbench.run import make_directory, write_bytes, write_text
 
 FIGURE = re.compile(r"\d\d_\w+\.(svg|png)")
 """Names of the files in figures/ that are ours to replace."""
 
 
 def write_documents(outcome):
-    """Write tables, report and figures of an Outcome, each file whole or not at all; the paths of the documents."""
-    write(outcome)
+    """Write report and figures of an Outcome, each file whole or not at all; gives their paths."""
     report = Report(outcome)
     write_text(outcome.directory / "report.html", report.html())
     folder = outcome.directory / "figures"

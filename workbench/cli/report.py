@@ -6,7 +6,7 @@ from workbench.cli import options
 from workbench.cli.run import disagreement
 from workbench.documents import write_documents
 from workbench.errors import WorkError
-from workbench.run import read_outcome
+from workbench.run import read_outcome, write
 
 
 @click.command("report")
@@ -19,6 +19,7 @@ def command(directory, as_json, quiet):
     report.html is one file that opens without a network. Example: workbench report results/lap_shear
     """
     outcome = read_outcome(directory)
+    write(outcome)
     report, *figures = map(str, write_documents(outcome))
     if as_json:
         told = {"report": report, "figures": figures, "plan": outcome.study.key}

@@ -3,6 +3,7 @@
 import numpy as np
 
 from workbench.groups import Batch
+from workbench.methods.log_f import all_positive, logarithms
 from workbench.methods.method import METHODS, Method
 from workbench.tails import anova_tail
 
@@ -34,8 +35,8 @@ class BoxcoxF(Method):
     )
 
     def kernel(self, batch, rng):
-        positive = ~(batch.columns <= 0).any(axis=0)
-        logs = np.log(np.where(positive, batch.columns, 1.0))
+        positive = batch.shared(all_positive)
+        logs = np.where(positive, batch.shared(logarithms).columns, 0.0)
         logs -= np.nansum(logs, axis=0) / (~np.isnan(logs)).sum(axis=0)
         powers = likeliest(logs, batch.designed)
         transformed = Batch.of_columns(powered(logs, powers), batch.designed)

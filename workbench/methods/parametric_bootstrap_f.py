@@ -6,7 +6,7 @@ import numpy as np
 from annotated_types import Ge, Le
 
 from workbench.methods.method import METHODS, Method
-from workbench.methods.welch_f import welch_weights
+from workbench.methods.welch_f import welch_squares, welch_weights
 from workbench.tails import chi_square_tail
 
 ROWS = 64
@@ -33,8 +33,7 @@ class ParametricBootstrapF(Method):
 
     def kernel(self, batch, rng):
         weights, shares, _, _ = batch.shift_free(welch_weights)
-        centre = (shares * batch.means).sum(axis=1, keepdims=True)
-        observed = (weights * (batch.means - centre) ** 2).sum(axis=1)
+        observed = batch.shared(welch_squares).sum(axis=1)
         freedom = np.broadcast_to(batch.sizes - 1, weights.shape)
         p = np.full(batch.replications, np.nan)
         usable = np.flatnonzero(np.isfinite(observed) & (batch.variances > 0).all(axis=1))

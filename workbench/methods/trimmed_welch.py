@@ -8,6 +8,7 @@ from annotated_types import Ge, Lt
 
 from workbench.groups import group_places
 from workbench.methods.method import METHODS, Method
+from workbench.methods.welch_f import welch_terms
 from workbench.tails import f_distribution_tail
 
 
@@ -41,12 +42,8 @@ def trimmed_weights(trim):
     def found(batch):
         """(away, weights, shares, inflation, freedom): trimmed mean less mean, and so on as in Welch's F."""
         away, spread, left = trimmed(batch, trim)
-        k = batch.groups
         weights = np.where(left > 1, 1 / np.where(spread > 0, spread, np.nan), np.nan)
-        shares = weights / weights.sum(axis=1, keepdims=True)
-        slack = ((1 - shares) ** 2 / (left - 1)).sum(axis=1)
-        inflation = (k - 1) * (1 + 2 * (k - 2) / (k**2 - 1) * slack)
-        return away, weights, shares, inflation, (k**2 - 1) / (3 * slack)
+        return away, weights, *welch_terms(weights, left - 1)
 
     return found
 

@@ -36,9 +36,14 @@ def welch_squares(batch):
 
 def welch_weights(batch):
     """((R, k) weights n / variance, (R, k) their shares, (R,) k - 1 times the correction of F, (R,) denominator df)."""
-    k = batch.groups
     weights = batch.sizes / batch.variances
+    return weights, *welch_terms(weights, batch.sizes - 1)
+
+
+def welch_terms(weights, freedoms):
+    """(shares, inflation, freedom) as in welch_weights, of any (R, k) weights and degrees of freedom of the groups."""
+    k = weights.shape[1]
     shares = weights / weights.sum(axis=1, keepdims=True)
-    slack = ((1 - shares) ** 2 / (batch.sizes - 1)).sum(axis=1)
+    slack = ((1 - shares) ** 2 / freedoms).sum(axis=1)
     inflation = (k - 1) * (1 + 2 * (k - 2) / (k**2 - 1) * slack)
-    return weights, shares, inflation, (k**2 - 1) / (3 * slack)
+    return shares, inflation, (k**2 - 1) / (3 * slack)

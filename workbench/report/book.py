@@ -16,6 +16,9 @@ from workbench.words import phrases
 MOST_PANELS = 12
 """A figure has at most so many panels."""
 
+POINTWISE = 0.05
+"""Error of an interval by itself: of a point of a curve, or of the rate within an end of a rule."""
+
 MOST_LISTED = 1000
 """A table for each condition has at most so many; the CSV files have all."""
 

@@ -4,6 +4,7 @@ import numpy as np
 
 from workbench.measures.rate import clopper_pearson
 from workbench.report.axes import Axis, bottom_axis, left_axis, pushed_apart
+from workbench.report.book import POINTWISE
 from workbench.report.drawing import Drawing
 from workbench.report.figure import Sheet
 from workbench.sentences import CURIOSITY
@@ -17,9 +18,6 @@ RATIOS = (0.06, 0.125, 0.25, 0.5, 1, 2, 4, 8, 16)
 
 OTHER = (0.01, 0.1)
 """Levels at which the title says whether the choice would hold."""
-
-POINTWISE = 0.05
-"""Error of each interval of a curve by itself."""
 
 
 def calibration(book):

@@ -7,12 +7,10 @@ from workbench.grid import HYPOTHESES, holds_as_recorded, recorded_quantities
 from workbench.measures.rate import clopper_pearson
 from workbench.numbers import decimals
 from workbench.report import shown
+from workbench.report.book import POINTWISE
 from workbench.theory.exact import distances
 
 ALL_HYPOTHESES = (*HYPOTHESES, "distributions", "stochastic size")
-
-POINTWISE = 0.05
-"""Error of the interval by which an end's worst condition is found."""
 
 MOST_ROWS = 12
 """Rows of a small table; the annex has all of them."""
@@ -22,7 +20,7 @@ def hypotheses(book):
     """[(what holds, [condition number])]: conditions by which hypotheses are true as recorded."""
     patterns = {}
     for condition in book.nulls:
-        holds = tuple(holding(condition, name) for name in ALL_HYPOTHESES)
+        holds = holding(condition)
         patterns.setdefault(holds, []).append(condition)
     return {
         "names": ALL_HYPOTHESES,
@@ -43,12 +41,13 @@ def hypotheses(book):
     }
 
 
-def holding(condition, hypothesis):
-    """Whether a hypothesis is true of a condition as recorded; None where what it speaks of does not exist."""
-    quantity = HYPOTHESES.get(hypothesis)
-    if quantity and any(group[quantity] is None for group in recorded_quantities(condition)):
-        return None
-    return hypothesis in holds_as_recorded(condition)
+def holding(condition):
+    """Which of ALL_HYPOTHESES are true of a condition as recorded; None where what one speaks of does not exist."""
+    true, groups = holds_as_recorded(condition), recorded_quantities(condition)
+    missing = {
+        name for name, quantity in HYPOTHESES.items() if any(group[quantity] is None for group in groups)
+    }
+    return tuple(None if name in missing else name in true for name in ALL_HYPOTHESES)
 
 
 def shared_levels(book, some):

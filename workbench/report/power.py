@@ -5,6 +5,7 @@ import numpy as np
 from workbench import texts
 from workbench.measures.rate import clopper_pearson
 from workbench.report.axes import Axis, bottom_axis, left_axis
+from workbench.report.book import POINTWISE
 from workbench.report.drawing import Drawing, fitted
 from workbench.report.figure import Sheet
 
@@ -15,9 +16,6 @@ SAME_DIRECTION = 1e-3
 
 SMALLEST = 3
 """Points that make a curve: none and two more."""
-
-POINTWISE = 0.05
-"""Error of each interval of a curve by itself."""
 
 
 def series_of(book):
